@@ -1,0 +1,216 @@
+/**
+ * One pass of the filter over one chamber's history at one setting of the hyper-parameters. Keeps, for every measured run,
+ * what was predicted before it was read, so that coverage, surprises and evidence can be told afterwards.
+ */
+import { type Observation, observe } from "./hypotheses.ts";
+import type { LightLink } from "./light-link.ts";
+import type { Layout, PreparedLog, PreparedRun } from "./prepare.ts";
+import { scatter } from "./priors.ts";
+import { addNoise, diagonalState, dot, project, resetLast, type State, updateScalar } from "./square-root.ts";
+
+/** Multipliers of the scatters, one node of the hyper-parameter grid. */
+export interface Node {
+  process: number;
+  step: number;
+  spread: number;
+}
+
+/** Predictions before each measured run: parallel arrays over `runs`. True film of the run, gauge not included. */
+export interface Forecasts {
+  runs: PreparedRun[];
+  index: number[];
+  lnThickness: number[];
+  /** Covariance of (index, ln thickness), process included. */
+  covariance: [number, number, number][];
+  /** Cumulative log density before this run. */
+  logBefore: number[];
+  /** Posterior weights of (ordinary, bad measurement, unlogged step). */
+  weights: [number, number, number][];
+}
+
+export interface Pass {
+  state: State;
+  logDensity: number;
+  forecasts: Forecasts;
+}
+
+export const stepVariance = (node: Node): [number, number] => [
+  (scatter.step[0] * node.step) ** 2,
+  (scatter.step[1] * node.step) ** 2,
+];
+export const processVariance = (node: Node): [number, number] => [
+  (scatter.process[0] * node.process) ** 2,
+  (scatter.process[1] * node.process) ** 2,
+];
+
+/** The state a chamber starts with: the given law of its coefficients, and an unknown step. */
+export function startState(coefficients: State, node: Node): State {
+  const p = coefficients.n;
+  const n = p + 2;
+  const state = diagonalState(new Float64Array(n), new Float64Array(n));
+  for (let i = 0; i < p; i++) {
+    state.mean[i] = coefficients.mean[i];
+    for (let j = 0; j <= i; j++) state.factor[i * n + j] = coefficients.factor[i * p + j];
+  }
+  resetLast(state, freshStep(node));
+  return state;
+}
+
+const freshStep = (node: Node) => scatter.step.map((sd) => ({ mean: 0, sd: sd * node.step }));
+
+export function emptyForecasts(): Forecasts {
+  return { runs: [], index: [], lnThickness: [], covariance: [], logBefore: [], weights: [] };
+}
+
+/**
+ * Runs events [from, to) over the state, in place. With `forecasts` given, records what was predicted. Returns the log
+ * density of all readings in that stretch.
+ */
+export function runEvents(
+  state: State,
+  layout: Layout,
+  log: PreparedLog,
+  node: Node,
+  options: { from?: number; to?: number; forecasts?: Forecasts; light?: LightLink | null; logBefore?: number } = {},
+): number {
+  const { from = 0, to = log.events.length, forecasts, light = null } = options;
+  const step = stepVariance(node);
+  let total = options.logBefore ?? 0;
+  const start = total;
+  for (let at = from; at < to; at++) {
+    const event = log.events[at];
+    if (event.kind === "clean") resetLast(state, freshStep(node));
+    else if (event.kind === "service") newHardware(state, layout);
+    else {
+      walk(state, node, event.count);
+      if (event.kind === "run") total += readRun(state, layout, event, { node, step, forecasts, light, total });
+    }
+  }
+  return total - start;
+}
+
+/** Ages the chamber by some depositions: the offset wanders. */
+export function walk(state: State, node: Node, count: number): void {
+  const root = Math.sqrt(count);
+  addNoise(state, state.n - 2, scatter.walk[0] * node.step * root);
+  addNoise(state, state.n - 1, scatter.walk[1] * node.step * root);
+}
+
+/** A service or a controller swap: the chamber's own offset is loosened for good, not only until the next clean. */
+function newHardware(state: State, layout: Layout): void {
+  addNoise(state, 0, scatter.service[0]);
+  addNoise(state, layout.indexTerms, scatter.service[1]);
+}
+
+interface ReadContext {
+  node: Node;
+  step: [number, number];
+  forecasts: Forecasts | undefined;
+  light: LightLink | null;
+  total: number;
+}
+
+function readRun(state: State, layout: Layout, run: PreparedRun, x: ReadContext): number {
+  const { hIndex, hRate } = run;
+  if (!hIndex || !hRate) return 0;
+  const [pn, pr] = processVariance(x.node);
+  const [gn, gc, gr] = run.gauge;
+  const seesIndex = Number.isFinite(run.yIndex);
+  const seesRate = Number.isFinite(run.yRate);
+  if (x.forecasts) recordForecast(x.forecasts, state, run, [pn, pr], x.total);
+  if (!seesIndex && !seesRate) {
+    // Film unread but light read: one number about the film, through the optics.
+    const density = x.light ? readLight(state, layout, run, x.light, [pn, pr]) : 0;
+    x.forecasts?.weights.push([1, 0, 0]);
+    return density;
+  }
+  const seen: Observation =
+    seesIndex && seesRate
+      ? { rows: [hIndex, hRate], values: [run.yIndex, run.yRate], noise: [gn + pn, gc, gc, gr + pr], outputs: [0, 1] }
+      : seesIndex
+        ? { rows: [hIndex], values: [run.yIndex], noise: [gn + pn], outputs: [0] }
+        : { rows: [hRate], values: [run.yRate], noise: [gr + pr], outputs: [1] };
+  const verdict = observe(state, seen, x.step);
+  x.forecasts?.weights.push(verdict.weights);
+  return verdict.logDensity;
+}
+
+function recordForecast(
+  forecasts: Forecasts,
+  state: State,
+  run: PreparedRun,
+  process: [number, number],
+  total: number,
+): void {
+  const film = filmAt(state, run.hIndex as Float64Array, run.hRate as Float64Array, process);
+  forecasts.runs.push(run);
+  forecasts.index.push(film.index);
+  forecasts.lnThickness.push(film.rate + run.known);
+  forecasts.covariance.push(film.covariance);
+  forecasts.logBefore.push(total);
+}
+
+let work: [Float64Array, Float64Array] = [new Float64Array(0), new Float64Array(0)];
+
+/** Mean and covariance of (index, ln thickness - known part) of a deposition with these rows, process scatter included. */
+export function filmAt(
+  state: State,
+  hIndex: Float64Array,
+  hRate: Float64Array,
+  process: readonly [number, number],
+): { index: number; rate: number; covariance: [number, number, number] } {
+  if (work[0].length !== state.n) work = [new Float64Array(state.n), new Float64Array(state.n)];
+  const [f1, f2] = work;
+  project(state, hIndex, f1);
+  project(state, hRate, f2);
+  return {
+    index: dot(hIndex, state.mean),
+    rate: dot(hRate, state.mean),
+    covariance: [dot(f1, f1) + process[0], dot(f1, f2), dot(f2, f2) + process[1]],
+  };
+}
+
+/** A reflectance minimum alone informs index times thickness: an iterated linearised update, two rounds. */
+function readLight(
+  state: State,
+  _layout: Layout,
+  run: PreparedRun,
+  link: LightLink,
+  process: [number, number],
+): number {
+  let density = 0;
+  for (const reading of run.light) {
+    if (reading.kind !== "reflectance_minimum_nm") continue; // weighted reflectance is flat and two-valued in thickness
+    const hIndex = run.hIndex as Float64Array;
+    const hRate = run.hRate as Float64Array;
+    const prior = state.mean.slice();
+    let h: Float64Array | null = null;
+    let y = 0;
+    let r = 0;
+    const trial = { n: state.n, mean: prior.slice(), factor: state.factor };
+    for (let round = 0; round < 2; round++) {
+      const index = dot(hIndex, trial.mean);
+      const ln = dot(hRate, trial.mean) + run.known;
+      const at = link.minimum(index, ln);
+      if (at === null) return density;
+      h = hIndex.map((v, i) => at.dIndex * v + at.dLnThickness * hRate[i]);
+      y = reading.value - at.valueNm + dot(h, trial.mean);
+      r = reading.sd ** 2 + at.facetSd ** 2 + at.dIndex ** 2 * process[0] + at.dLnThickness ** 2 * process[1];
+      const f = new Float64Array(state.n);
+      project(state, h, f);
+      const alpha = r + dot(f, f);
+      const innovation = y - dot(h, prior);
+      // A minimum far from anything the film could be (another order, a wrong wafer) teaches nothing.
+      if (innovation ** 2 > 25 * alpha) return density;
+      if (round === 1) density += updateScalar(state, h, y, r);
+      else {
+        for (let i = 0; i < state.n; i++) {
+          let gain = 0;
+          for (let k = 0; k <= i; k++) gain += state.factor[i * state.n + k] * f[k];
+          trial.mean[i] = prior[i] + (gain * innovation) / alpha;
+        }
+      }
+    }
+  }
+  return density;
+}

@@ -1,0 +1,180 @@
+/**
+ * The calibrated line: every chamber's model, each leaning on its sisters. The pipeline, each step usable alone:
+ * layout (which coefficients the history can teach) -> prepared rows -> a pass a chamber and node under "some chamber of
+ * this line" -> for a target chamber, what the sisters say -> its own pass from there -> node weights -> ChamberModel.
+ */
+import { refuse } from "../engine/index.ts";
+import { emptyForecasts, type Forecasts, type Node, runEvents, startState } from "./chamber-filter.ts";
+import { ChamberModel, type NodePass } from "./chamber-model.ts";
+import { type FacetFactor, facetFactor } from "./facet.ts";
+import { filmResponse, type Lever } from "./film-response.ts";
+import { type LightLink, lightLink, type MinimumOf } from "./light-link.ts";
+import { hyperNodes } from "./nodes.ts";
+import { type Layout, layoutFor, type PreparedLog, prepare } from "./prepare.ts";
+import type { ChamberLog, Settings } from "./run.ts";
+import { coefficientLaw, drawChamber, hearSister, type Law, stateOf } from "./sisters.ts";
+import { copyState, type State } from "./square-root.ts";
+
+export interface LearnOptions {
+  levers: readonly Lever[];
+  /** The recipe all levers are measured from; canonical units. */
+  reference: Settings;
+  /** What the reference recipe is meant to lay. */
+  aim: { index: number | null; thicknessNm: number | null };
+  /** Declared facet factor; {1, 0} on polished wafers. */
+  facet: { mean: number; sd: number };
+  /** Reflectance minimum of the coated cell, nm; null when there is no optics to lean on. */
+  minimumOf: MinimumOf | null;
+}
+
+/** A node on its way through a log. */
+interface Hopeful {
+  node: Node;
+  start: State;
+  state: State;
+  /** Log weight before this log, and so far. */
+  logBefore: number;
+  logWeight: number;
+  forecasts: Forecasts | null;
+}
+
+/** Events between two looks at the race, and how many nats behind is hopeless: e^-16 is 1e-7 of the weight. */
+const stretch = 16;
+const hopeless = 16;
+
+interface GenericPass {
+  generic: Law;
+  posterior: Law;
+  logDensity: number;
+}
+
+/** The fleet's law before any data, at a node. */
+function fleetPrior(layout: Layout): Law {
+  const p = layout.active.length;
+  const covariance = new Float64Array(p * p);
+  const mean = new Float64Array(p);
+  layout.active.forEach((term, i) => {
+    mean[i] = term.prior.mean;
+    covariance[i * p + i] = term.prior.sd ** 2;
+  });
+  return { p, mean, covariance };
+}
+
+const spreadOf = (layout: Layout, node: Node) =>
+  Float64Array.from(layout.active, (t) => (t.prior.spread * node.spread) ** 2);
+
+export class LineModel {
+  readonly layout: Layout;
+  readonly facet: FacetFactor;
+  readonly light: LightLink | null;
+  private readonly prepared: Map<string, PreparedLog>;
+  private readonly nodes = hyperNodes();
+  private readonly generic = new Map<string, (GenericPass | null)[]>();
+  private readonly models = new Map<string, ChamberModel>();
+
+  constructor(
+    readonly logs: readonly ChamberLog[],
+    readonly options: LearnOptions,
+  ) {
+    const response = filmResponse(options.levers, options.reference, options.aim);
+    this.layout = layoutFor(response, logs);
+    this.prepared = new Map(logs.map((log) => [log.chamber, prepare(this.layout, log)]));
+    const { minimumOf, facet } = options;
+    this.facet = minimumOf ? facetFactor(facet, logs, minimumOf) : { ...facet, runs: 0, doubted: [] };
+    this.light = minimumOf ? lightLink(minimumOf, this.facet) : null;
+  }
+
+  /** The model of one chamber. Refuses "unknown-chamber". */
+  chamber(name: string): ChamberModel {
+    const known = this.models.get(name);
+    if (known) return known;
+    const log = this.prepared.get(name);
+    if (!log) refuse("unknown-chamber", `no chamber ${name}`, { hint: [...this.prepared.keys()].join(", ") });
+    const sisters = [...this.prepared.values()].filter((other) => other !== log && readings(other) > 0);
+    const hopefuls: Hopeful[] = [];
+    this.nodes.forEach(({ node, logPrior }, i) => {
+      let fleet = fleetPrior(this.layout);
+      let logWeight = logPrior;
+      const spread = spreadOf(this.layout, node);
+      for (const sister of sisters) {
+        const generic = this.genericPass(sister)[i];
+        if (!generic) return;
+        const heard = hearSister(fleet, spread, generic);
+        fleet = heard.fleet;
+        logWeight += heard.logDensity;
+      }
+      const start = startState(stateOf(drawChamber(fleet, spread)), node);
+      hopefuls.push({
+        node,
+        start,
+        state: copyState(start),
+        logBefore: logWeight,
+        logWeight,
+        forecasts: emptyForecasts(),
+      });
+    });
+    const passes = this.race(log, hopefuls).map(
+      (h): NodePass => ({ ...h, logAfter: h.logWeight, forecasts: h.forecasts ?? emptyForecasts() }),
+    );
+    const model = new ChamberModel(this.layout, log, passes, {
+      sisters: sisters.map((s) => ({ chamber: s.chamber, readings: readings(s) })),
+      light: this.light,
+    });
+    this.models.set(name, model);
+    return model;
+  }
+
+  /**
+   * What a chamber's own data say, per node; shared by all its sisters. Null where the node lost the race. The chamber
+   * spread matters only through the prior, which `hearSister` swaps, so one pass serves all its values.
+   */
+  private genericPass(log: PreparedLog): (GenericPass | null)[] {
+    let passes = this.generic.get(log.chamber);
+    if (!passes) {
+      const widest = Math.max(...this.nodes.map(({ node }) => node.spread));
+      const hopefuls = this.nodes.flatMap(({ node, logPrior }): (Hopeful & { generic: Law })[] => {
+        if (node.spread !== widest) return [];
+        const generic = drawChamber(fleetPrior(this.layout), spreadOf(this.layout, node));
+        const start = startState(stateOf(generic), node);
+        return [
+          { node, start, state: copyState(start), logBefore: logPrior, logWeight: logPrior, forecasts: null, generic },
+        ];
+      });
+      const left = new Set<Hopeful>(this.race(log, hopefuls));
+      passes = this.nodes.map(({ node }) => {
+        const h = hopefuls.find((one) => one.node.process === node.process && one.node.step === node.step);
+        return h && left.has(h)
+          ? { generic: h.generic, posterior: coefficientLaw(h.state), logDensity: h.logWeight - h.logBefore }
+          : null;
+      });
+      this.generic.set(log.chamber, passes);
+    }
+    return passes;
+  }
+
+  /** Runs the log at every node, in stretches, dropping nodes that have fallen hopelessly behind. Returns those left. */
+  private race(log: PreparedLog, hopefuls: readonly Hopeful[]): Hopeful[] {
+    let left = [...hopefuls];
+    for (let from = 0; from < log.events.length; from += stretch) {
+      const to = Math.min(from + stretch, log.events.length);
+      for (const h of left) {
+        const options = {
+          from,
+          to,
+          forecasts: h.forecasts ?? undefined,
+          light: this.light,
+          logBefore: h.logWeight - h.logBefore,
+        };
+        h.logWeight += runEvents(h.state, this.layout, log, h.node, options);
+      }
+      const best = Math.max(...left.map((h) => h.logWeight));
+      left = left.filter((h) => h.logWeight > best - hopeless);
+    }
+    return left;
+  }
+}
+
+/** Runs of a log with something read. */
+export function readings(log: PreparedLog): number {
+  return log.events.filter((e) => e.kind === "run").length;
+}

@@ -1,0 +1,125 @@
+/**
+ * What to expect: film, light and chance at the settings in force and at those tried, side by side.
+ */
+import type { Interval, Outlook } from "../../../recipes/index.ts";
+import type { Look, Tone } from "../../palette.ts";
+import { signs } from "../../palette.ts";
+import { chanceText, fixed, withHalf } from "../../text/numbers.ts";
+import { type Paper, type Row, type Segment, toWidth, words } from "../../text/rows.ts";
+import { left } from "../../text/width.ts";
+import type { ChamberState } from "../state.ts";
+import { draftName } from "./settings-table.ts";
+
+const labelWidth = 13;
+
+/** Eight rows, and one more for each sentence about the window. */
+export function expectedRows(chamber: ChamberState, paper: Paper): Row[] {
+  const { look, width } = paper;
+  const { now, goal } = chamber.view;
+  const { after } = chamber;
+  const withGoal = width >= 54;
+  const column = Math.floor((width - labelWidth - (withGoal ? 14 : 0)) / 2);
+  const sign = signs(look);
+  const name = draftName(chamber);
+  const row = (label: string, a: Segment[], b: Segment[], goalText = ""): Row => [
+    { text: left(label, labelWidth) },
+    ...toWidth(a, column),
+    ...toWidth(b, column),
+    ...(withGoal ? [words(goalText, look)] : []),
+  ];
+  const value = (
+    of: (outlook: Outlook) => Interval | null,
+    decimals: number,
+    inGoal: (mean: number) => boolean | null,
+  ) =>
+    [now, after].map((outlook): Segment[] => {
+      const interval = outlook === null ? null : of(outlook);
+      if (interval === null) return [{ text: outlook === null ? "" : "-" }];
+      const within = inGoal(interval.mean);
+      const text = withHalf(interval, decimals);
+      return [
+        {
+          text: look.ascii ? text.replace(" ±", "+/-") : text,
+          tone: within === null ? "plain" : within ? "good" : "watch",
+        },
+      ];
+    });
+  const line = (label: string, cellsOf: Segment[][], goalText = "") => row(label, cellsOf[0], cellsOf[1], goalText);
+  const header: Row = row(
+    "expected",
+    [{ text: `${sign.now} now`, tone: "now" }],
+    [{ text: after === null ? "" : `${sign.after} ${name}`, tone: "after" }],
+    "goal",
+  );
+  const { index, thicknessNm, weightedReflectancePercent, reflectanceMinimumNm } = goal;
+  const near = (goalOf: { value: number; within: number } | undefined) => (mean: number) =>
+    goalOf === undefined ? null : Math.abs(mean - goalOf.value) <= goalOf.within + 1e-9;
+  const rows: Row[] = [
+    header,
+    line(
+      "index",
+      value((o) => o.predicted.index, 3, near(index)),
+      toleranceText(index, 2),
+    ),
+    line(
+      "thickness nm",
+      value((o) => o.predicted.thickness_nm, 1, near(thicknessNm)),
+      toleranceText(thicknessNm, 0),
+    ),
+    line(
+      "weighted R %",
+      value(
+        (o) => o.predicted.weighted_reflectance_percent,
+        2,
+        (mean) => (weightedReflectancePercent === undefined ? null : mean <= weightedReflectancePercent.atMost),
+      ),
+      weightedReflectancePercent === undefined ? "" : `at most ${weightedReflectancePercent.atMost}`,
+    ),
+    line(
+      "R minimum nm",
+      value((o) => o.predicted.reflectance_minimum_nm, 0, near(reflectanceMinimumNm)),
+      toleranceText(reflectanceMinimumNm, 0),
+    ),
+    line(
+      "all in goal",
+      [now, after].map((o) => chanceCell(o)),
+    ),
+    line(
+      "lost mA/cm2",
+      [now, after].map((o): Segment[] => [{ text: lossText(o) }]),
+    ),
+    colourRow(now, after, column, look),
+  ];
+  for (const sentence of (after ?? now).outsideWindow)
+    rows.push([{ text: "OUTSIDE ", tone: "alarm" }, words(sentence, look)]);
+  return rows;
+}
+
+function chanceCell(outlook: Outlook | null): Segment[] {
+  if (outlook === null) return [{ text: "" }];
+  const chance = outlook.chanceInGoal;
+  const tone: Tone = chance === null ? "plain" : chance >= 0.7 ? "good" : "watch";
+  return [{ text: chanceText(chance), tone }];
+}
+
+/** Light that does not reach the silicon: reflected, and absorbed in the film. */
+function lossText(outlook: Outlook | null): string {
+  if (outlook === null) return "";
+  if (outlook.current === null) return "-";
+  return fixed(outlook.current.reflected + outlook.current.absorbedInFilm, 2);
+}
+
+/** The label carries the swatches, so that the words beside keep their whole column. */
+function colourRow(now: Outlook, after: Outlook | null, column: number, look: Look): Row {
+  const patch = (outlook: Outlook | null): Segment[] =>
+    outlook?.colour && (look.colour === "true" || look.colour === "256")
+      ? [{ text: "  ", ground: outlook.colour.hex }]
+      : [];
+  const said = (outlook: Outlook | null) => words(outlook === null ? "" : (outlook.colour?.words ?? "-"), look);
+  const label: Row = [{ text: "colour " }, ...patch(now), { text: " " }, ...patch(after)];
+  return [...toWidth(label, labelWidth), ...toWidth([said(now)], column), ...toWidth([said(after)], column)];
+}
+
+function toleranceText(goal: { value: number; within: number } | undefined, decimals: number): string {
+  return goal === undefined ? "" : `${fixed(goal.value, decimals)} ±${goal.within}`;
+}

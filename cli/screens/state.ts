@@ -1,0 +1,151 @@
+/**
+ * Everything the screens remember, as data. What changes it is in `reduce.ts`; what is drawn from it, in the panes.
+ */
+import type { ChamberView, LineOverview, Outlook, ProposalView } from "../../recipes/index.ts";
+import type { Place } from "../keys.ts";
+import type { RunTyped } from "./desk.ts";
+import type { Input } from "./keyboard.ts";
+import type { RunForm } from "./run-form.ts";
+import type { TextField } from "./text-field.ts";
+
+export type Picture = "plane" | "spectrum" | "runs" | "learned";
+export const pictures: readonly Picture[] = ["plane", "spectrum", "runs", "learned"];
+
+/** The chamber being looked at. */
+export interface ChamberState {
+  view: ChamberView;
+  /** Settings tried, all of them; equal to those in force when nothing is tried. */
+  draft: ReadonlyMap<string, number>;
+  /** What to expect at the draft; null while it equals what is in force, or is not answered yet. */
+  after: Outlook | null;
+  /** Drafts before, newest last. */
+  past: readonly ReadonlyMap<string, number>[];
+  /** The setting chosen, in the view's order. */
+  cursor: number;
+  /** A value being typed for it. */
+  typing: TextField | null;
+  picture: Picture;
+  /** The sheet handed out when the open change was adopted here. */
+  sheet: { change: string; lines: readonly string[] } | null;
+}
+
+/** Something to be done outside: asked for by the reducer, carried out by `perform.ts`. */
+export type Effect =
+  | { do: "load" }
+  | { do: "reread" }
+  | { do: "open"; chamber: string }
+  | { do: "peek"; chamber: string }
+  | { do: "look"; chamber: string; settings: ReadonlyMap<string, number> }
+  | { do: "propose"; chamber: string }
+  | { do: "adopt"; chamber: string; proposal: string; reason: string }
+  | { do: "enter"; chamber: string; change: string }
+  | { do: "log"; chamber: string; run: RunTyped }
+  | { do: "clean"; chamber: string }
+  | { do: "close"; chamber: string; change: string }
+  | { do: "undo"; chamber: string; change: string; reason: string }
+  | { do: "leave" }
+  | { do: "repaint" }
+  | { do: "suspend" };
+
+/** What lies over a screen and takes the keys. The last one is on top. */
+export type Layer =
+  | { kind: "proposal"; chamber: string; proposal: ProposalView; scroll: number }
+  | { kind: "reason"; title: string; about: readonly string[]; field: TextField; onYes: ReasonFor }
+  | { kind: "name"; question: string; expected: string; field: TextField; onYes: Effect }
+  | { kind: "confirm"; question: string; onYes: Effect }
+  | { kind: "form"; chamber: string; form: RunForm }
+  | { kind: "reading"; title: string; lines: readonly string[]; scroll: number }
+  | { kind: "commands"; field: TextField; cursor: number };
+
+export type ReasonFor =
+  | { do: "adopt"; chamber: string; proposal: string; nameFirst: boolean }
+  | { do: "undo"; chamber: string; change: string };
+
+export interface Message {
+  tone: "good" | "plain" | "watch";
+  text: string;
+}
+
+export interface State {
+  columns: number;
+  rows: number;
+  overview: LineOverview | null;
+  screen: "line" | "chamber";
+  /** Name of the chamber chosen on the line screen. */
+  chosen: string | null;
+  filter: TextField | null;
+  filtering: boolean;
+  chamber: ChamberState | null;
+  layers: readonly Layer[];
+  message: Message | null;
+  /** What was said since the start, oldest first. */
+  log: readonly Message[];
+  /** What is being waited for, in words; nothing that writes starts meanwhile. */
+  busy: string | null;
+}
+
+export type Event =
+  | Input
+  | { kind: "size"; columns: number; rows: number }
+  | { kind: "overview"; overview: LineOverview }
+  | { kind: "chamber"; view: ChamberView; open: boolean }
+  | { kind: "looked"; chamber: string; settings: ReadonlyMap<string, number>; outlook: Outlook }
+  | { kind: "proposed"; chamber: string; proposal: ProposalView }
+  | { kind: "adopted"; chamber: string; change: string; sheet: readonly string[] }
+  | { kind: "done"; text: string }
+  | { kind: "closed"; change: string; lines: readonly string[] }
+  | { kind: "failed"; text: string };
+
+/** A state and what it asks to have done. */
+export interface Step {
+  state: State;
+  effects: readonly Effect[];
+}
+
+export function startState(columns: number, rows: number): State {
+  return {
+    columns,
+    rows,
+    overview: null,
+    screen: "line",
+    chosen: null,
+    filter: null,
+    filtering: false,
+    chamber: null,
+    layers: [],
+    message: null,
+    log: [],
+    busy: null,
+  };
+}
+
+/** Where the next key goes. */
+export function placeOf(state: State): Place {
+  const top = state.layers.at(-1);
+  if (top !== undefined) return top.kind;
+  if (state.screen === "line") return state.filtering ? "filter" : "line";
+  return state.chamber !== null && state.chamber.typing !== null ? "value" : "chamber";
+}
+
+/** Chambers shown on the line screen, in the order of the overview. */
+export function chambersShown(state: State): LineOverview["chambers"] {
+  const all = state.overview?.chambers ?? [];
+  const wanted = state.filter?.text.trim().toLowerCase() ?? "";
+  if (wanted === "") return all;
+  return all.filter((row) =>
+    `${row.chamber} ${row.recipe} ${row.attention} ${row.sentence}`.toLowerCase().includes(wanted),
+  );
+}
+
+/** The chamber that commands act on: the one open, else the one chosen. */
+export function chamberInHand(state: State): string | null {
+  return state.screen === "chamber" ? (state.chamber?.view.chamber ?? null) : state.chosen;
+}
+
+export type Room = "small" | "medium" | "large";
+
+/** How much fits: one picture at a time, two, or everything at once. */
+export function roomOf(columns: number, rows: number): Room {
+  if (columns < 110 || rows < 34) return "small";
+  return columns < 180 || rows < 44 ? "medium" : "large";
+}

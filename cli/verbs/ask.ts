@@ -1,0 +1,140 @@
+/** The verbs that ask: propose, predict, chamber. */
+
+import { refuse } from "../../engine/index.ts";
+import {
+  asQuantities,
+  chamberModel,
+  chamberView,
+  type Mode,
+  overview,
+  parseSet,
+  predict,
+  predictedDocument,
+  propose,
+} from "../../recipes/index.ts";
+import { chamberText, predictedText, proposalText } from "../text/answers.ts";
+import { overviewText } from "../text/overview.ts";
+import { chamberFlag, flag, type Outcome, settingsFlag, type Verb, word } from "./verb.ts";
+
+function modeOf(text: string | undefined): Mode | null {
+  if (text === undefined) return null;
+  if (text === "tuning" || text === "production") return text;
+  return refuse("bad-mode", `--for is tuning or production, not ${text}`);
+}
+
+export const askVerbs: Verb[] = [
+  {
+    name: "propose",
+    does: "the next settings, or keep, or measure, or look for a fault, or out of reach",
+    words: [],
+    flags: [
+      chamberFlag(),
+      flag("recipe", "NAME", "the recipe"),
+      flag("for", "tuning|production", "overrules the mode found from the record"),
+    ],
+    examples: ["coatwright propose --chamber A2"],
+    writes: true,
+    run: async (call): Promise<Outcome> => {
+      const { dryRun, ...draft } = call.stamp();
+      const ws = call.workspace();
+      const done = await propose(ws, {
+        chamber: call.args.need("chamber"),
+        recipe: call.args.text("recipe"),
+        forMode: modeOf(call.args.text("for")),
+        dryRun,
+        draft,
+      });
+      const { schema: _, ...document } = done.document;
+      return {
+        document,
+        text: proposalText(ws, done),
+        notices: done.repeated ? [`asked before on the same basis: ${done.proposal}`] : [],
+        exit: done.document["advice"] === "out_of_reach" ? 3 : 0,
+      };
+    },
+  },
+  {
+    name: "predict",
+    does: "film and light expected for any settings",
+    words: [],
+    flags: [
+      chamberFlag(),
+      flag("recipe", "NAME", "the recipe"),
+      settingsFlag("a setting to try; the others as in force"),
+    ],
+    examples: ["coatwright predict --chamber A2 --set time=575s"],
+    writes: false,
+    run: (call) => {
+      const ws = call.workspace();
+      const chamber = ws.chamber(call.args.need("chamber"));
+      const recipe = ws.recipe(chamber.name, call.args.text("recipe"));
+      const { settings, expected } = predict(ws, chamber.name, recipe, parseSet(call.args.settings("set"), chamber));
+      const document = {
+        chamber: chamber.name,
+        recipe,
+        settings: asQuantities(settings, chamber),
+        predicted: predictedDocument(expected.predicted),
+        chance_in_goal: expected.chanceInGoal,
+        cannot_tell: expected.cannotTell,
+      };
+      return { document, text: predictedText(ws, chamber, settings, expected) };
+    },
+  },
+  {
+    name: "chamber",
+    does: "the calibrated model: slopes, offsets, drift, what the data cannot tell, alarms; without a name the whole line",
+    words: [word("name", "the chamber", false)],
+    flags: [],
+    examples: ["coatwright chamber A2"],
+    writes: false,
+    run: (call) => {
+      const ws = call.workspace();
+      const name = call.args.text("name");
+      if (name === undefined) {
+        const line = overview(ws);
+        return { document: lineDocument(line), text: overviewText(line, { colour: false, ascii: false, width: 100 }) };
+      }
+      ws.chamber(name);
+      const view = chamberView(ws, name);
+      const model = chamberModel(ws, name);
+      const document = {
+        chamber: name,
+        recipe: view.recipe,
+        measured_runs: model.ownReadings,
+        depositions_since_clean: model.k,
+        coefficients: model.coefficients().map((c) => ({
+          of: c.term.output === "index" ? "index" : "ln_thickness",
+          term: c.term.name,
+          mean: c.mean,
+          sd: c.sd,
+          prior_sd: c.priorSd,
+          learned: c.active,
+        })),
+        learned: view.learned,
+        cannot_tell: view.cannotTell,
+        alarms: view.alarms,
+        now: { predicted: predictedDocument(view.now.predicted), chance_in_goal: view.now.chanceInGoal },
+      };
+      return { document, text: chamberText(view, model.ownReadings, model.k) };
+    },
+  },
+];
+
+function lineDocument(line: ReturnType<typeof overview>): Record<string, unknown> {
+  return {
+    line: line.line,
+    goal: line.goalText,
+    entries: line.entries,
+    head: line.head,
+    chambers: line.chambers.map((c) => ({
+      chamber: c.chamber,
+      recipe: c.recipe,
+      attention: c.attention,
+      says: c.sentence,
+      chance_in_goal: c.chanceInGoal,
+      depositions_since_clean: c.depositionsSinceClean,
+      open_change: c.openChange?.change ?? null,
+    })),
+    warnings: line.warnings,
+  };
+}

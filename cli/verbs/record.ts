@@ -1,0 +1,193 @@
+/** The verbs that write down what happened: run, record run, recipe, clean, precoat, service, note. */
+import { type Recorded, type RunGiven, recordEvent, recordNote, recordRecipe, recordRun } from "../../recipes/index.ts";
+import { readSites } from "./sites.ts";
+import { type Call, chamberFlag, flag, type Outcome, settingsFlag, type Verb, word } from "./verb.ts";
+
+const runFlags = [
+  settingsFlag("a setting the run was made with; those not given come from the recipe in force"),
+  flag("weighted-reflectance", "2.3%", "weighted reflectance read"),
+  flag("reflectance-minimum", "604nm", "reflectance minimum read"),
+  flag("on", "polished|cell", "what was measured on; a polished witness when left out"),
+  flag("gauge", "NAME", "the gauge; the line's only one for it when left out"),
+  flag("sites", "FILE.csv", "position,site,index,thickness_nm of each site"),
+  flag("recipe", "NAME", "the recipe; may be left out where the chamber runs one"),
+  flag("step", "NAME", "the layer, of a recipe with several"),
+  flag("boat", "TEXT", "boat or carrier"),
+  flag("position", "TEXT", "position in it"),
+  flag("since-clean", "37", "the tool's own counter of depositions since the clean"),
+  flag("count", "24", "depositions this entry stands for"),
+  flag("kind", "tuning|production", "a label, never used by the model"),
+  flag("note", "TEXT", "anything worth keeping"),
+];
+
+function runGiven(call: Call): RunGiven {
+  const { args } = call;
+  const sites = args.text("sites");
+  return {
+    chamber: args.need("chamber"),
+    set: args.settings("set"),
+    index: args.given("index"),
+    thickness: args.given("thickness"),
+    weightedReflectance: args.given("weighted-reflectance"),
+    reflectanceMinimum: args.given("reflectance-minimum"),
+    on: args.text("on"),
+    gauge: args.text("gauge"),
+    recipe: args.text("recipe"),
+    step: args.text("step"),
+    boat: args.text("boat"),
+    position: args.text("position"),
+    sinceClean: args.given("since-clean"),
+    count: args.given("count"),
+    kind: args.text("kind"),
+    note: args.text("note"),
+    ...(sites ? { sites: readSites(call.readFile(sites), sites) } : {}),
+  };
+}
+
+/** Entry and hash, or what would be written. */
+export function recorded(done: Recorded): Outcome {
+  const { entry, hash, sentence, notices, drafts } = done;
+  if (entry === null)
+    return {
+      document: { would_record: drafts },
+      text: `would record: ${JSON.stringify(drafts[0]?.data)}\n${sentence}`,
+      notices,
+    };
+  return { document: { entry, hash, said: sentence }, text: `recorded #${entry}. ${sentence}`, notices };
+}
+
+const run = async (call: Call) => recorded(await recordRun(call.workspace(), runGiven(call), call.stamp()));
+
+export const recordVerbs: Verb[] = [
+  {
+    name: "run",
+    does: "records a measured run: the one typed twenty times a day",
+    words: [
+      word("chamber", "the chamber"),
+      word("index", "index at 632.8 nm on a polished witness, or -", false),
+      word("thickness", "thickness in nm, or -", false),
+    ],
+    flags: runFlags,
+    examples: ["coatwright run A2 2.043 84.1", "coatwright run A2 - 84.1 --set time=575s"],
+    writes: true,
+    run,
+  },
+  {
+    name: "record run",
+    does: "records a run with any of its settings and readings",
+    words: [],
+    flags: [
+      chamberFlag(),
+      flag("index", "2.043", "index at 632.8 nm"),
+      flag("thickness", "84.1nm", "thickness"),
+      ...runFlags,
+    ],
+    examples: [
+      "coatwright record run --chamber A2 --set time=560s --index 2.043 --thickness 84.1nm --reflectance-minimum 604nm",
+      "coatwright record run --chamber A2 --count 24",
+    ],
+    writes: true,
+    run,
+  },
+  {
+    name: "record recipe",
+    does: "states what is in force: the first version, or what somebody changed at the tool; corrections add up from here",
+    words: [],
+    flags: [
+      chamberFlag(),
+      flag("recipe", "NAME", "the recipe"),
+      settingsFlag("its settings", true),
+      flag("reason", "TEXT", "why"),
+    ],
+    examples: [
+      "coatwright record recipe --chamber A2 --recipe blue --set silane=812sccm --set ammonia=6900sccm --set time=560s",
+    ],
+    writes: true,
+    run: async (call) => {
+      const ws = call.workspace();
+      const chamber = call.args.need("chamber");
+      const recipe = call.args.text("recipe") ?? ws.recipe(ws.chamber(chamber).name);
+      return recorded(
+        await recordRecipe(
+          ws,
+          { chamber, recipe, set: call.args.settings("set"), reason: call.args.text("reason") },
+          call.stamp(),
+        ),
+      );
+    },
+  },
+  {
+    name: "record clean",
+    does: "starts a new cycle after a chamber clean",
+    words: [],
+    flags: [chamberFlag(), flag("what", "TEXT", "what was done")],
+    examples: ["coatwright record clean --chamber A2 --what 'NF3 clean, new showerhead gasket'"],
+    writes: true,
+    run: async (call) =>
+      recorded(
+        await recordEvent(
+          call.workspace(),
+          { kind: "clean", chamber: call.args.need("chamber"), what: call.args.text("what") },
+          call.stamp(),
+        ),
+      ),
+  },
+  {
+    name: "record precoat",
+    does: "records depositions that conditioned the chamber without product",
+    words: [],
+    flags: [chamberFlag(), flag("count", "N", "how many", true)],
+    examples: ["coatwright record precoat --chamber A2 --count 2"],
+    writes: true,
+    run: async (call) =>
+      recorded(
+        await recordEvent(
+          call.workspace(),
+          { kind: "precoat", chamber: call.args.need("chamber"), count: call.args.given("count") ?? 1 },
+          call.stamp(),
+        ),
+      ),
+  },
+  {
+    name: "record service",
+    does: "starts a new hardware epoch: a controller swapped, a part replaced",
+    words: [],
+    flags: [chamberFlag(), flag("what", "TEXT", "what was done", true)],
+    examples: ["coatwright record service --chamber A2 --what 'silane controller swapped'"],
+    writes: true,
+    run: async (call) =>
+      recorded(
+        await recordEvent(
+          call.workspace(),
+          { kind: "service", chamber: call.args.need("chamber"), what: call.args.text("what") },
+          call.stamp(),
+        ),
+      ),
+  },
+  {
+    name: "record note",
+    does: "keeps a note; with --override it overrules one named alarm for some runs, with the evidence as its text",
+    words: [],
+    flags: [
+      flag("text", "TEXT", "the note, or the evidence", true),
+      chamberFlag(false),
+      flag("override", "ALARM", "the alarm to overrule"),
+      flag("runs", "N", "for how many runs"),
+    ],
+    examples: [
+      "coatwright record note --chamber A2 --override index_low --runs 5 --text 'leak check passed at 2e-4 mbar l/s'",
+    ],
+    writes: true,
+    run: async (call) => {
+      const alarm = call.args.text("override");
+      const override = alarm === undefined ? undefined : { alarm, runs: call.args.given("runs") ?? 5 };
+      return recorded(
+        await recordNote(
+          call.workspace(),
+          { chamber: call.args.text("chamber"), text: call.args.need("text"), override },
+          call.stamp(),
+        ),
+      );
+    },
+  },
+];

@@ -1,0 +1,79 @@
+/** The goal as a region of film: a box in index and thickness, and conditions in reflectance through the optics. */
+import { chanceIn, type FilmLaw, type FilmPart, type GoalRegion } from "../../calibration/index.ts";
+import type { Goal } from "../line/line.ts";
+import type { CellLight } from "./cell-light.ts";
+
+/** Goal names as in line.yaml. */
+export type GoalName = "index" | "thickness" | "weighted_reflectance" | "reflectance_minimum";
+
+const everywhere: readonly [number, number] = [Number.NEGATIVE_INFINITY, Number.POSITIVE_INFINITY];
+const anyThickness: readonly [number, number] = [0, Number.POSITIVE_INFINITY];
+
+/** The region for some of the goals, at one value of the facet factor. */
+function region(goal: Goal, names: readonly GoalName[], light: CellLight, factor: number): GoalRegion {
+  const has = (name: GoalName) => names.includes(name);
+  const also: ((index: number, thicknessNm: number) => number)[] = [];
+  const w = goal.weightedReflectancePercent;
+  if (w && has("weighted_reflectance"))
+    also.push((n, d) => (light.weighted(n, d * factor) ?? Number.POSITIVE_INFINITY) - w.atMost);
+  const m = goal.reflectanceMinimumNm;
+  if (m && has("reflectance_minimum"))
+    also.push((n, d) => Math.abs((light.minimum(n, d * factor) ?? Number.POSITIVE_INFINITY) - m.value) - m.within);
+  const n = has("index") ? goal.index : undefined;
+  const d = has("thickness") ? goal.thicknessNm : undefined;
+  return {
+    index: n ? [n.value - n.within, n.value + n.within] : everywhere,
+    thicknessNm: d ? [d.value - d.within, d.value + d.within] : anyThickness,
+    also,
+  };
+}
+
+/** Names of the goals set, in the order of line.yaml. */
+export function goalNames(goal: Goal): GoalName[] {
+  const out: GoalName[] = [];
+  if (goal.index) out.push("index");
+  if (goal.thicknessNm) out.push("thickness");
+  if (goal.weightedReflectancePercent) out.push("weighted_reflectance");
+  if (goal.reflectanceMinimumNm) out.push("reflectance_minimum");
+  return out;
+}
+
+export const isLight = (name: GoalName) => name === "weighted_reflectance" || name === "reflectance_minimum";
+
+/**
+ * Chance that the film meets all the named goals at once, averaged over what is not known of the facet factor (three-point
+ * Gauss-Hermite: the chance is smooth in the factor because the film's own scatter smears the edges).
+ */
+export function chanceOf(law: FilmLaw, goal: Goal, names: readonly GoalName[], light: CellLight): number {
+  const { mean, sd } = light.facet;
+  const needsLight = names.some(isLight);
+  if (!needsLight) return chanceIn(law, region(goal, names, light, mean));
+  const thin = { parts: fewer(law.parts) };
+  if (light.surface === "polished" || sd === 0) return chanceIn(thin, region(goal, names, light, mean));
+  const root3 = Math.sqrt(3);
+  return [
+    [-root3, 1 / 6],
+    [0, 2 / 3],
+    [root3, 1 / 6],
+  ].reduce((sum, [z, weight]) => sum + weight * chanceIn(thin, region(goal, names, light, mean + z * sd)), 0);
+}
+
+/** The heaviest parts of a mixture, the last few per cent of weight merged into one part: for the costly integrals only. */
+function fewer(parts: readonly FilmPart[]): FilmPart[] {
+  const sorted = [...parts].sort((a, b) => b.weight - a.weight);
+  const keep = sorted.slice(0, 5);
+  const rest = sorted.slice(5);
+  const weight = rest.reduce((s, p) => s + p.weight, 0);
+  if (weight < 1e-9) return keep;
+  const index = rest.reduce((s, p) => s + p.weight * p.index, 0) / weight;
+  const lnThickness = rest.reduce((s, p) => s + p.weight * p.lnThickness, 0) / weight;
+  const covariance: [number, number, number] = [0, 0, 0];
+  for (const p of rest) {
+    const a = p.index - index;
+    const b = p.lnThickness - lnThickness;
+    covariance[0] += (p.weight * (p.covariance[0] + a * a)) / weight;
+    covariance[1] += (p.weight * (p.covariance[1] + a * b)) / weight;
+    covariance[2] += (p.weight * (p.covariance[2] + b * b)) / weight;
+  }
+  return [...keep, { weight, index, lnThickness, covariance }];
+}

@@ -1,0 +1,156 @@
+/**
+ * From the book to what calibration learns from: settings in canonical units, film readings with their gauge's covariance,
+ * light readings, cleans and services, in the order they happened.
+ */
+import type {
+  ChamberEvent,
+  ChamberLog,
+  FilmReading,
+  LearnOptions,
+  Lever,
+  LightReading,
+  MinimumOf,
+  Settings,
+} from "../../calibration/index.ts";
+import { gaugeCovariance, lightSd } from "../advice/expectation.ts";
+import type { Gauge, Line } from "../line/line.ts";
+import { goalOf } from "../line/line.ts";
+import { fromQuantity } from "../line/settings.ts";
+import type { Reading, StepSettings } from "../record/entries.ts";
+import { chamberRecord, type Ledger } from "../record/ledger.ts";
+import { flatSettings } from "../record/steps.ts";
+import type { RunRecord, TimelineEvent } from "../record/timeline.ts";
+
+/** A recipe's settings in canonical units; settings the line no longer declares are left out. */
+export function canonicalSettings(line: Line, steps: readonly StepSettings[]): Settings {
+  const out = new Map<string, number>();
+  if (steps.length !== 1) return out;
+  for (const [name, quantity] of flatSettings(steps)) {
+    const setting = line.settings.get(name);
+    if (setting) out.set(name, fromQuantity(setting, quantity));
+  }
+  return out;
+}
+
+/** The last value read of each film property on a witness, with its gauge's covariance. Null when none was. */
+export function filmReading(line: Line, readings: readonly Reading[]): FilmReading | null {
+  let index: number | null = null;
+  let thicknessNm: number | null = null;
+  let covariance: [number, number, number] = [0, 0, 0];
+  for (const reading of readings) {
+    if (reading.on !== "polished") continue;
+    const gauge = gaugeCovariance(gaugeNamed(line, reading.gauge), reading.sites ?? 1);
+    if (reading.index !== undefined) {
+      index = reading.index;
+      covariance = [gauge[0], reading.thickness_nm === undefined ? 0 : gauge[1], covariance[2]];
+    }
+    if (reading.thickness_nm !== undefined) {
+      thicknessNm = reading.thickness_nm;
+      covariance = [covariance[0], reading.index === undefined ? 0 : gauge[1], gauge[2]];
+    }
+  }
+  return index === null && thicknessNm === null ? null : { index, thicknessNm, gauge: covariance };
+}
+
+export function lightReadings(line: Line, readings: readonly Reading[]): LightReading[] {
+  const out: LightReading[] = [];
+  for (const reading of readings) {
+    if (reading.on !== "cell") continue;
+    const gauge = gaugeNamed(line, reading.gauge);
+    for (const kind of ["reflectance_minimum_nm", "weighted_reflectance_percent"] as const) {
+      const value = reading[kind];
+      if (value !== undefined) out.push({ kind, value, sd: lightSd(gauge, kind) });
+    }
+  }
+  return out;
+}
+
+const gaugeNamed = (line: Line, name: string): Gauge | null => line.gauges.get(name) ?? null;
+
+function runEvent(line: Line, run: RunRecord): ChamberEvent {
+  return {
+    kind: "run",
+    entry: run.seq,
+    settings: canonicalSettings(line, run.data.steps),
+    count: run.data.count,
+    sinceClean: run.data.since_clean ?? null,
+    film: filmReading(line, run.readings),
+    light: lightReadings(line, run.readings),
+  };
+}
+
+function eventOf(line: Line, event: TimelineEvent): ChamberEvent | null {
+  switch (event.kind) {
+    case "run":
+      return runEvent(line, event);
+    case "precoat":
+      return { kind: "precoat", entry: event.seq, count: event.count };
+    case "clean":
+    case "service":
+      return { kind: event.kind, entry: event.seq };
+    case "version":
+      return null;
+  }
+}
+
+/** Every chamber the line declares, with what the book says of it. */
+export function chamberLogs(line: Line, ledger: Ledger): ChamberLog[] {
+  return [...line.chambers.keys()].map((chamber) => ({
+    chamber,
+    events: chamberRecord(ledger, chamber)
+      .timeline.map((event) => eventOf(line, event))
+      .filter((event): event is ChamberEvent => event !== null),
+  }));
+}
+
+export function leversOf(line: Line): Lever[] {
+  return [...line.settings.values()].map((s) => ({
+    setting: s.name,
+    meaning: s.meaning,
+    acts: s.acts,
+    low: s.low,
+    high: s.high,
+  }));
+}
+
+/**
+ * The recipe all levers are measured from: the first one stated on this line, else the first run with settings. Null when
+ * the book has neither.
+ */
+export function referenceRecipe(line: Line, ledger: Ledger): { settings: Settings; recipe: string } | null {
+  let best: { seq: number; steps: readonly StepSettings[]; recipe: string } | null = null;
+  for (const chamber of line.chambers.keys())
+    for (const event of chamberRecord(ledger, chamber).timeline) {
+      if (event.kind !== "version" && event.kind !== "run") continue;
+      const steps = event.kind === "version" ? event.steps : event.data.steps;
+      // A stated recipe comes before any run, whatever the order they were entered in.
+      const rank = event.seq + (event.kind === "run" ? 1e9 : 0);
+      if (best && best.seq <= rank) continue;
+      const settings = canonicalSettings(line, steps);
+      if (
+        leversOf(line).some(
+          (l) =>
+            !settings.has(l.setting) &&
+            (l.meaning === "time" || l.meaning === "silane" || l.meaning === "ammonia" || l.meaning === "belt_speed"),
+        )
+      )
+        continue;
+      best = { seq: rank, steps, recipe: event.recipe };
+    }
+  return best ? { settings: canonicalSettings(line, best.steps), recipe: best.recipe } : null;
+}
+
+export function learnOptions(
+  line: Line,
+  reference: { settings: Settings; recipe: string },
+  minimumOf: MinimumOf | null,
+): LearnOptions {
+  const goal = goalOf(line, reference.recipe);
+  return {
+    levers: leversOf(line),
+    reference: reference.settings,
+    aim: { index: goal.index?.value ?? null, thicknessNm: goal.thicknessNm?.value ?? null },
+    facet: line.wafer.facetFactor,
+    minimumOf,
+  };
+}

@@ -1,0 +1,272 @@
+/** Looking: the line at a glance, one chamber in full, and the live what-if. Plain data for verbs and screens; writes nothing. */
+import { coverageOf, type Settings, suspicions, trackRecord, untold } from "../../calibration/index.ts";
+import { Refusal } from "../../engine/index.ts";
+import { decide } from "../advice/decide.ts";
+import { chancesAlone, type Expectation, expectation } from "../advice/expectation.ts";
+import { asPercent, missWords, runsWord } from "../advice/reasons.ts";
+import { outside } from "../line/window.ts";
+import type { ChamberRow, ChamberView, LineOverview, OpenChange, Outlook, ProposalView, RunSeen } from "../outlook.ts";
+import { runsSince } from "../record/change-steps.ts";
+import { openChange as openChangeOf } from "../record/changes.ts";
+import { chamberRecord } from "../record/ledger.ts";
+import { runsOf, wasMeasured } from "../record/timeline.ts";
+import { chamberModel, inForce, type Proposed, question, recentRuns } from "./asking.ts";
+import { canonicalSettings, filmReading, leversOf, lightReadings } from "./learn.ts";
+import { learned } from "./learned.ts";
+import { goalText, lightText } from "./words.ts";
+import type { Workspace } from "./workspace.ts";
+
+const order: ChamberRow["attention"][] = ["fault", "enter", "propose", "measure", "close", "no data", "keep"];
+
+export function overview(ws: Workspace): LineOverview {
+  const chambers = [...ws.line.chambers.keys()].map((name) => chamberRow(ws, name));
+  chambers.sort(
+    (a, b) => order.indexOf(a.attention) - order.indexOf(b.attention) || (a.chanceInGoal ?? 2) - (b.chanceInGoal ?? 2),
+  );
+  const warnings = ws.book.problems().map((p) => p.message);
+  if (ws.ledger.lineFile !== null && ws.ledger.lineFile !== new TextDecoder().decode(ws.readBeside("line.yaml")))
+    warnings.push("line.yaml has changed since the last entry; the next entry records the difference.");
+  return {
+    line: ws.line.name,
+    folder: ws.folder,
+    demo: ws.demo,
+    goal: ws.line.goal,
+    goalText: goalText(ws.line.goal),
+    lightText: lightText(ws.line),
+    chambers,
+    warnings,
+    entries: ws.ledger.entries.length,
+    head: ws.book.hash,
+  };
+}
+
+function chamberRow(ws: Workspace, name: string): ChamberRow {
+  const runs = runsSeen(ws, name, 12);
+  const base = { chamber: name, lastRuns: runs, runs: runsOf(chamberRecord(ws.ledger, name).timeline).length };
+  try {
+    const recipe = ws.recipe(name);
+    const q = question(ws, name, recipe, null);
+    const answer = decide(q);
+    const open = openChange(ws, name, recipe);
+    const chance = answer.now.chanceInGoal ?? answer.now.chanceJudged;
+    const recent = recentRuns(ws, name);
+    let attention: ChamberRow["attention"] = "keep";
+    let call = "leave it alone";
+    const certain = answer.alarms.find((a) => a.certain);
+    if (certain) {
+      attention = "fault";
+      call = `${certain.name.replace("_", " ")}: look for a fault, do not tune`;
+    } else if (open?.state === "adopted") {
+      attention = "enter";
+      call = `${open.change} is adopted: enter it at the tool`;
+    } else if (open?.state === "entered" && q.openChange && q.openChange.runsSince > 0) {
+      attention = "close";
+      call = `${open.change} has ${runsWord(q.openChange.runsSince)} since it was entered: close it`;
+    } else if (answer.advice === "change" || answer.advice === "out_of_reach") {
+      attention = "propose";
+      call = answer.advice === "change" ? "ask for a proposal" : "goal out of reach: ask for the nearest point";
+    } else if (answer.advice === "measure") {
+      attention = "measure";
+      call = open ? `run and measure ${open.change}` : "measure once more";
+    }
+    const cleaned = chamberRecord(ws.ledger, name).timeline.some((e) => e.kind === "clean");
+    const since = q.runsSinceClean.length;
+    const when = cleaned ? `${runsWord(since)} since clean` : `new, ${runsWord(q.model.ownReadings)}`;
+    const misses = missWords(answer.now.film, q.goal);
+    const state = misses.length ? misses.join(", ") : "on goal";
+    return {
+      ...base,
+      recipe,
+      attention,
+      sentence: `${when}, ${state}, ${asPercent(chance)} in goal: ${call}`,
+      chanceInGoal: chance,
+      depositionsSinceClean: q.model.k,
+      awaitingReadings: recent.awaiting,
+      openChange: open,
+    };
+  } catch (error) {
+    if (!(error instanceof Refusal)) throw error;
+    const { message, hint } = error.problems[0];
+    return {
+      ...base,
+      recipe: "",
+      attention: "no data",
+      sentence: `${message}${hint ? `: ${hint}` : ""}`,
+      chanceInGoal: null,
+      depositionsSinceClean: 0,
+      awaitingReadings: 0,
+      openChange: null,
+    };
+  }
+}
+
+function openChange(ws: Workspace, chamber: string, recipe: string): OpenChange | null {
+  const open = openChangeOf(ws.ledger, chamber, recipe);
+  if (!open) return null;
+  return {
+    change: open.id,
+    state: open.state as OpenChange["state"],
+    at: open.at,
+    by: open.by,
+    reason: open.reason,
+    before: canonicalSettings(ws.line, open.before),
+    after: canonicalSettings(ws.line, open.after),
+    runsSince: runsSince(ws.ledger, open).length,
+  };
+}
+
+/** The last measured runs of a chamber beside what had been expected of them. */
+export function runsSeen(ws: Workspace, chamber: string, last: number): RunSeen[] {
+  const runs = runsOf(chamberRecord(ws.ledger, chamber).timeline).filter(wasMeasured).slice(-last);
+  if (runs.length === 0 || !ws.model) return [];
+  const record = new Map(trackRecord(ws.model.chamber(chamber), last).map((r) => [r.entry, r]));
+  return runs.map((run): RunSeen => {
+    const film = filmReading(ws.line, run.readings);
+    const light = lightReadings(ws.line, run.readings);
+    const tracked = record.get(run.seq);
+    return {
+      entry: run.seq,
+      at: run.at,
+      sinceClean: tracked?.k ?? 0,
+      index: film?.index ?? null,
+      thicknessNm: film?.thicknessNm ?? null,
+      reflectanceMinimumNm: light.find((l) => l.kind === "reflectance_minimum_nm")?.value ?? null,
+      weightedReflectancePercent: light.find((l) => l.kind === "weighted_reflectance_percent")?.value ?? null,
+      expected: tracked
+        ? {
+            index: tracked.expectedIndex.mean,
+            indexHalf: 1.96 * tracked.expectedIndex.sd,
+            thicknessNm: tracked.expectedThickness.mean,
+            thicknessHalf: 1.96 * tracked.expectedThickness.sd,
+          }
+        : null,
+      suspect: tracked?.suspect ?? 0,
+      step: tracked?.step ?? 0,
+    };
+  });
+}
+
+/** The outlook at settings from an expectation: adds spectrum, current and colour of the mean film. */
+function outlookOf(ws: Workspace, chamber: string, settings: Settings, e: Expectation): Outlook {
+  const light = ws.light;
+  const lit = sceneOf(light, e.film);
+  return {
+    settings,
+    film: e.film,
+    predicted: e.predicted,
+    chanceInGoal: e.chanceInGoal,
+    chances: chancesAlone(chamberModel(ws, chamber), settings, { goal: ws.goal(ws.recipe(chamber)), light: ws.light }),
+    spectrum: lit?.spectrum ?? null,
+    current: lit?.current ?? null,
+    colour: lit?.colour ?? null,
+    outsideWindow: outside(settings, ws.chamber(chamber), ws.line).map((f) => f.sentence),
+    cannotTell: e.cannotTell,
+  };
+}
+
+/** Spectrum with its 95 % band (over the thickness the film may have), current and colour of a film on the cell. */
+function sceneOf(
+  light: Workspace["light"],
+  film: Expectation["film"],
+): Pick<Outlook, "spectrum" | "current" | "colour"> | null {
+  const d = film.thicknessNm * light.facet.mean;
+  if (light.weighted(film.index, d) === null) return null;
+  const { wafer } = light;
+  const middle = wafer.nitride(film.index, d).reflectance;
+  const half = 1.96 * Math.hypot(Math.sqrt(film.covariance[2]) * light.facet.mean, film.thicknessNm * light.facet.sd);
+  const edges = [d - half, d + half].map((edge) => wafer.nitride(film.index, Math.max(edge, 1)).reflectance);
+  const { available, reflected, absorbedInFilm, intoSilicon } = wafer.currents(film.index, d);
+  const { hex, words, lab } = wafer.colour(film.index, d);
+  return {
+    spectrum: {
+      wavelengthNm: Array.from(wafer.wavelengthNm),
+      reflectance: Array.from(middle),
+      low: Array.from(middle, (v, i) => Math.min(v, edges[0][i], edges[1][i])),
+      high: Array.from(middle, (v, i) => Math.max(v, edges[0][i], edges[1][i])),
+    },
+    current: { available, reflected, absorbedInFilm, intoSilicon },
+    colour: { hex, words, lab: [lab[0], lab[1], lab[2]] },
+  };
+}
+
+/** What to expect at any settings of a chamber (all of them given). Writes nothing. */
+export function whatIf(ws: Workspace, chamber: string, settings: Settings): Outlook {
+  const recipe = ws.recipe(chamber);
+  const e = expectation(chamberModel(ws, chamber), settings, { line: ws.line, goal: ws.goal(recipe), light: ws.light });
+  return outlookOf(ws, chamber, settings, e);
+}
+
+/** One chamber in full. */
+export function chamberView(ws: Workspace, name: string): ChamberView {
+  const chamber = ws.chamber(name);
+  const recipe = ws.recipe(name);
+  const goal = ws.goal(recipe);
+  const model = chamberModel(ws, name);
+  const before = inForce(ws, name, recipe).settings;
+  const now = whatIf(ws, name, before);
+  const coverage = coverageOf(trackRecord(model));
+  return {
+    chamber: name,
+    recipe,
+    goal,
+    goalText: goalText(goal),
+    lightText: lightText(ws.line),
+    surface: ws.line.wafer.surface,
+    settings: [...chamber.settings.values()].filter((s) => before.has(s.name)),
+    now,
+    proposal: null,
+    runs: runsSeen(ws, name, 20),
+    openChange: openChange(ws, name, recipe),
+    learned: learned(ws, model, before, coverage),
+    cannotTell: [...new Set([...now.cannotTell, ...untold(model, leversOf(ws.line)).map((u) => u.sentence)])],
+    alarms: suspicions(model)
+      .filter((s) => s.probability > 0.3)
+      .map((s) => `${s.name}: ${asPercent(s.probability)} since entry ${s.onsetEntry}`),
+    plane: plane(ws, goal, now),
+  };
+}
+
+/** Weighted reflectance over the film plane about goal and present film. */
+function plane(ws: Workspace, goal: ChamberView["goal"], now: Outlook): ChamberView["plane"] {
+  const light = ws.light;
+  const centreN = goal.index?.value ?? now.film?.index ?? 2.05;
+  const centreD = goal.thicknessNm?.value ?? now.film?.thicknessNm ?? 85;
+  const halfN = Math.max(
+    0.08,
+    3 * (goal.index?.within ?? 0.02),
+    1.3 * Math.abs((now.film?.index ?? centreN) - centreN),
+  );
+  const halfD = Math.max(
+    10,
+    4 * (goal.thicknessNm?.within ?? 2),
+    1.3 * Math.abs((now.film?.thicknessNm ?? centreD) - centreD),
+  );
+  const steps = 20;
+  const at = (centre: number, half: number) =>
+    Array.from({ length: steps + 1 }, (_, i) => centre - half + (2 * half * i) / steps);
+  const index = at(centreN, halfN);
+  const thicknessNm = at(centreD, halfD);
+  return {
+    index,
+    thicknessNm,
+    weightedReflectancePercent: thicknessNm.map((d) =>
+      index.map((n) => light.weighted(n, d * light.facet.mean) ?? Number.NaN),
+    ),
+  };
+}
+
+/** A proposal as the screens show it. */
+export function proposalView(ws: Workspace, proposed: Proposed): ProposalView {
+  const { answer } = proposed;
+  const chamber = String(proposed.document["chamber"]);
+  return {
+    proposal: proposed.proposal,
+    advice: answer.advice,
+    after: outlookOf(ws, chamber, answer.after, answer.ahead),
+    because: answer.because,
+    cannotTell: answer.cannotTell,
+    alarms: answer.alarms.map((a) => a.sentence),
+    cautions: answer.cautions,
+    done: answer.done,
+  };
+}

@@ -1,0 +1,321 @@
+/** Recording what happened: runs with their readings, the recipe in force, cleans, services, notes. One entry each. */
+
+import type { Dimension } from "../../engine/index.ts";
+import { parseQuantity, refuse } from "../../engine/index.ts";
+import { gaugeFor } from "../advice/expectation.ts";
+import type { Chamber } from "../line/line.ts";
+import { asQuantities, type GivenSettings, parseSet } from "../line/settings.ts";
+import { outside } from "../line/window.ts";
+import type { AnyDraft, Reading } from "../record/entries.ts";
+import { recipeInForce } from "../record/versions.ts";
+import { canonicalSettings } from "./learn.ts";
+import { runSentence } from "./run-sentence.ts";
+import type { Workspace } from "./workspace.ts";
+import { type Stamp, type Written, write } from "./writing.ts";
+
+/** A number or a text with a unit, as typed or as given in JSON. */
+export type Given = string | number;
+
+export interface RunGiven {
+  chamber: string;
+  set?: GivenSettings;
+  index?: Given;
+  thickness?: Given;
+  weightedReflectance?: Given;
+  reflectanceMinimum?: Given;
+  on?: string;
+  gauge?: string;
+  recipe?: string;
+  step?: string;
+  boat?: string;
+  position?: string;
+  sinceClean?: Given;
+  count?: Given;
+  kind?: string;
+  note?: string;
+  /** Sites already read from a file: values and their place. */
+  sites?: NonNullable<Reading["site_values"]>;
+}
+
+export interface Recorded extends Written {
+  entry: number | null;
+  hash: string | null;
+  sentence: string;
+  drafts: AnyDraft[];
+}
+
+const plausible: Record<string, [number, number]> = {
+  index: [1.3, 4],
+  thickness: [0.1, 2000],
+  "weighted reflectance": [0, 100],
+  "reflectance minimum": [200, 2000],
+};
+
+/** A reading's value in canonical unit, refused when not finite or beyond what a film can be. */
+function measured(what: string, given: Given | undefined, dimension: Dimension, unit: string): number | undefined {
+  if (given === undefined || given === "-" || given === "") return undefined;
+  const value =
+    typeof given === "number"
+      ? given
+      : dimension === "number"
+        ? plainNumber(what, given)
+        : parseQuantity(given, dimension, { defaultUnit: unit }).value;
+  const [low, high] = plausible[what];
+  if (!Number.isFinite(value)) refuse("not-a-number", `${what} is ${given}, not a number`);
+  if (value < low || value > high)
+    refuse(
+      "impossible-value",
+      `${what} ${given} is impossible: it must lie in ${low} to ${high}${unit && ` ${unit}`}`,
+      { hint: hintFor(what, value) },
+    );
+  return value;
+}
+
+const hintFor = (what: string, value: number) =>
+  what === "index" && value > 4 ? "is it the thickness? The order is index, then thickness" : undefined;
+
+function plainNumber(what: string, text: string): number {
+  return parseQuantity(text.trim(), "number").value ?? refuse("not-a-number", `${what} "${text}" is not a number`);
+}
+
+function wholeNumber(what: string, given: Given | undefined, least: number): number | undefined {
+  if (given === undefined) return undefined;
+  const value = typeof given === "number" ? given : Number(given);
+  if (!Number.isInteger(value) || value < least || value > 1e6)
+    refuse("not-a-count", `${what} is ${given}; a whole number from ${least} on is needed`);
+  return value;
+}
+
+/** The settings a run was made with: what was given over what was in force when it happened. */
+export function runSettings(
+  ws: Workspace,
+  chamber: Chamber,
+  recipe: string,
+  given: GivenSettings | undefined,
+  atMs: number,
+) {
+  const set = parseSet(given ?? [], chamber, { allowOutside: true });
+  const force = recipeInForce(ws.ledger, chamber.name, recipe, atMs);
+  const base = force ? canonicalSettings(ws.line, force.steps) : new Map<string, number>();
+  const settings = new Map([...base, ...set]);
+  if (settings.size === 0)
+    refuse("no-settings", `nothing is in force on ${chamber.name} under ${recipe} and no --set was given`, {
+      hint: `coatwright record recipe --chamber ${chamber.name} --recipe ${recipe} --set silane=812sccm ...`,
+    });
+  const from = !force
+    ? "given"
+    : set.size === 0
+      ? force.stated
+        ? "in force"
+        : "latest run"
+      : set.size >= base.size
+        ? "given"
+        : `in force, with ${[...set.keys()].join(", ")} given`;
+  return { settings, from };
+}
+
+function readingsOf(ws: Workspace, run: RunGiven): Reading[] {
+  const index = run.sites ? meanOf(run.sites.map((s) => s.index)) : measured("index", run.index, "number", "");
+  const thickness = run.sites
+    ? meanOf(run.sites.map((s) => s.thickness_nm))
+    : measured("thickness", run.thickness, "length", "nm");
+  const weighted = measured("weighted reflectance", run.weightedReflectance, "percent", "%");
+  const minimum = measured("reflectance minimum", run.reflectanceMinimum, "length", "nm");
+  if (run.on !== undefined && run.on !== "polished" && run.on !== "cell")
+    refuse("bad-on", `--on is polished or cell, not ${run.on}`);
+  if (run.gauge !== undefined && !ws.line.gauges.has(run.gauge))
+    refuse("unknown-gauge", `no gauge ${run.gauge} on this line`, {
+      hint: `gauges are ${[...ws.line.gauges.keys()].join(", ")}`,
+    });
+  const out: Reading[] = [];
+  const gaugeName = (on: "polished" | "cell", what: "film" | "light") =>
+    run.gauge ?? gaugeFor(ws.line, on, what)?.name ?? "unnamed";
+  if (index !== undefined || thickness !== undefined) {
+    const on = run.on ?? "polished";
+    if (on === "cell" && ws.line.wafer.surface === "pyramids" && index !== undefined)
+      refuse(
+        "index-on-texture",
+        "an index read on a textured cell says nothing: reflectance there fixes index times thickness only",
+        { hint: "read it on a polished witness" },
+      );
+    out.push({
+      gauge: gaugeName(on as "polished" | "cell", "film"),
+      on: on as "polished" | "cell",
+      ...(index !== undefined ? { index } : {}),
+      ...(thickness !== undefined ? { thickness_nm: thickness } : {}),
+      ...(run.sites ? { sites: run.sites.length, site_values: run.sites } : {}),
+    });
+  }
+  if (weighted !== undefined || minimum !== undefined) {
+    const on = (run.on ?? (ws.line.wafer.surface === "pyramids" ? "cell" : "polished")) as "polished" | "cell";
+    out.push({
+      gauge: gaugeName(on, "light"),
+      on,
+      ...(weighted !== undefined ? { weighted_reflectance_percent: weighted } : {}),
+      ...(minimum !== undefined ? { reflectance_minimum_nm: minimum } : {}),
+    });
+  }
+  return out;
+}
+
+function meanOf(values: (number | undefined)[]): number | undefined {
+  const read = values.filter((v): v is number => v !== undefined);
+  return read.length === 0 ? undefined : read.reduce((a, b) => a + b, 0) / read.length;
+}
+
+const one = (written: Written & { drafts: AnyDraft[] }, sentence: string): Recorded => {
+  const receipt = written.receipts.at(-1);
+  return { ...written, entry: receipt?.seq ?? null, hash: receipt?.hash ?? null, sentence };
+};
+
+export async function recordRun(ws: Workspace, run: RunGiven, how: Stamp & { dryRun?: boolean }): Promise<Recorded> {
+  const chamber = ws.chamber(run.chamber);
+  if (run.step !== undefined) refuse("many-steps", "recipes of one layer are handled so far: leave --step out");
+  if (run.kind !== undefined && run.kind !== "tuning" && run.kind !== "production")
+    refuse("bad-kind", `--kind is tuning or production, not ${run.kind}`);
+  const recipe = ws.recipe(chamber.name, run.recipe);
+  const atMs = how.at ? Date.parse(how.at) : ws.ports.now();
+  const readings = readingsOf(ws, run);
+  const { settings, from } = runSettings(ws, chamber, recipe, run.set, atMs);
+  const count = wholeNumber("--count", run.count, 1) ?? 1;
+  const sinceClean = wholeNumber("--since-clean", run.sinceClean, 0);
+  const sentence = runSentence(ws, chamber, recipe, settings, readings);
+  const outsideNow = outside(settings, chamber, ws.line).map((f) => f.sentence);
+  const written = await write(
+    ws,
+    () => [
+      {
+        kind: "run",
+        at: how.at,
+        by: how.by,
+        data: {
+          chamber: chamber.name,
+          recipe,
+          settings_from: from,
+          steps: [{ settings: asQuantities(settings, chamber) }],
+          count,
+          ...(sinceClean !== undefined ? { since_clean: sinceClean } : {}),
+          ...(run.kind ? { kind: run.kind as "tuning" | "production" } : {}),
+          ...(run.boat ? { boat: run.boat } : {}),
+          ...(run.position ? { position: run.position } : {}),
+          readings,
+          ...(run.note ? { note: run.note } : {}),
+        },
+      },
+    ],
+    how,
+  );
+  written.notices.push(...outsideNow);
+  return one(written, sentence);
+}
+
+/** States what is in force. All settings the model needs must be given, or be in force already. */
+export async function recordRecipe(
+  ws: Workspace,
+  given: { chamber: string; recipe: string; set: GivenSettings; reason?: string },
+  how: Stamp & { dryRun?: boolean },
+): Promise<Recorded> {
+  const chamber = ws.chamber(given.chamber);
+  const atMs = how.at ? Date.parse(how.at) : ws.ports.now();
+  const set = parseSet(given.set, chamber);
+  if (set.size === 0)
+    refuse("no-settings", "no settings were given", {
+      hint: "--set silane=812sccm --set ammonia=6900sccm --set time=560s",
+    });
+  const force = recipeInForce(ws.ledger, chamber.name, given.recipe, atMs);
+  const settings = new Map([...(force ? canonicalSettings(ws.line, force.steps) : []), ...set]);
+  const missing = [...chamber.settings.values()].filter((s) => s.tune && !settings.has(s.name)).map((s) => s.name);
+  if (missing.length > 0)
+    refuse("missing-setting", `${missing.join(", ")} ${missing.length > 1 ? "are" : "is"} not given`, {
+      hint: "a recipe states every setting that is tuned",
+    });
+  const found = outside(settings, chamber, ws.line);
+  if (found.length > 0)
+    refuse("outside-window", found.map((f) => f.sentence).join(" "), {
+      hint: "the window can be changed only in line.yaml",
+    });
+  const written = await write(
+    ws,
+    () => [
+      {
+        kind: "recipe",
+        at: how.at,
+        by: how.by,
+        data: {
+          chamber: chamber.name,
+          recipe: given.recipe,
+          steps: [{ settings: asQuantities(settings, chamber) }],
+          ...(given.reason ? { reason: given.reason } : {}),
+        },
+      },
+    ],
+    how,
+  );
+  return one(
+    written,
+    `${given.recipe} is stated for ${chamber.name}: ${settings.size} settings, from here corrections add up.`,
+  );
+}
+
+export async function recordEvent(
+  ws: Workspace,
+  event:
+    | { kind: "clean" | "service"; chamber: string; what?: string }
+    | { kind: "precoat"; chamber: string; count: Given },
+  how: Stamp & { dryRun?: boolean },
+): Promise<Recorded> {
+  const chamber = ws.chamber(event.chamber).name;
+  const stamp = { at: how.at, by: how.by };
+  let draft: AnyDraft;
+  let sentence: string;
+  if (event.kind === "precoat") {
+    const count = wholeNumber("--count", event.count, 1) ?? 1;
+    draft = { kind: "precoat", ...stamp, data: { chamber, count } };
+    sentence = `${count} precoat deposition${count > 1 ? "s" : ""} on ${chamber}.`;
+  } else if (event.kind === "clean") {
+    draft = { kind: "clean", ...stamp, data: { chamber, ...(event.what ? { what: event.what } : {}) } };
+    sentence = `${chamber} starts a new cycle: measure its first runs, a clean moves index and rate.`;
+  } else {
+    if (!event.what?.trim()) refuse("no-what", "a service needs to say what was done", { hint: "--what TEXT" });
+    draft = { kind: "service", ...stamp, data: { chamber, what: event.what } };
+    sentence = `${chamber} starts a new hardware epoch: what was known of its offset counts less from here on.`;
+  }
+  return one(await write(ws, () => [draft], how), sentence);
+}
+
+/** A note, or with `override` a person's overruling of one named alarm for a number of runs. */
+export async function recordNote(
+  ws: Workspace,
+  note: { chamber?: string; text: string; override?: { alarm: string; runs: Given } },
+  how: Stamp & { dryRun?: boolean },
+): Promise<Recorded> {
+  if (!note.text?.trim()) refuse("no-text", "a note needs a text", { hint: "--text TEXT" });
+  const chamber = note.chamber === undefined ? undefined : ws.chamber(note.chamber).name;
+  let override: { alarm: string; runs: number; chamber: string } | undefined;
+  if (note.override) {
+    if (!chamber) refuse("no-chamber", "an override names a chamber", { hint: "--chamber NAME" });
+    const alarms = ["index_low", "index_high", "past_anchor"];
+    if (!alarms.includes(note.override.alarm))
+      refuse("unknown-alarm", `no alarm ${note.override.alarm}`, { hint: `alarms are ${alarms.join(", ")}` });
+    const allowed = ws.line.people.override;
+    const person = how.by ?? ws.ports.person;
+    if (allowed.length > 0 && !allowed.includes(person))
+      refuse("not-allowed", `${person} may not override alarms on this line`, {
+        hint: `line.yaml names ${allowed.join(", ")}`,
+      });
+    override = { alarm: note.override.alarm, runs: wholeNumber("--runs", note.override.runs, 1) ?? 1, chamber };
+  }
+  const draft: AnyDraft = {
+    kind: "note",
+    at: how.at,
+    by: how.by,
+    data: { ...(chamber ? { chamber } : {}), text: note.text, ...(override ? { override } : {}) },
+  };
+  const written = await write(ws, () => [draft], how);
+  return one(
+    written,
+    override
+      ? `${override.alarm} is overruled on ${override.chamber} for ${override.runs} runs, or until the next clean.`
+      : "Noted.",
+  );
+}

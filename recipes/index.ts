@@ -1,0 +1,47 @@
+/**
+ * The one door to room `recipes/`: what is changed and why. The line as declared, the record book, advice, the desk that
+ * joins them over one line folder, reports. Re-exports only.
+ */
+export type { Answer } from "./advice/decide.ts";
+export type { Mode } from "./advice/mode.ts";
+export {
+  answerDocument,
+  chamberModel,
+  inForce,
+  type Proposed,
+  predict,
+  predictedDocument,
+  propose,
+  question,
+} from "./desk/asking.ts";
+export { adopt, approve, type Changed, close, enter, sheetOf, undo } from "./desk/changing.ts";
+export { checkLine } from "./desk/checking.ts";
+export { createLine } from "./desk/creating.ts";
+export { importRuns } from "./desk/importing.ts";
+export { learned } from "./desk/learned.ts";
+export { chamberView, overview, proposalView, runsSeen, whatIf } from "./desk/looking.ts";
+export {
+  type Given,
+  type Recorded,
+  type RunGiven,
+  recordEvent,
+  recordNote,
+  recordRecipe,
+  recordRun,
+} from "./desk/recording.ts";
+export { goalText, goalWords, lightText } from "./desk/words.ts";
+export { holdsLine, LINE_FILE, Workspace } from "./desk/workspace.ts";
+export type { Stamp, Written } from "./desk/writing.ts";
+export * from "./line/line.ts";
+export { asQuantities, asQuantity, type GivenSettings, parseSet, shown, snapInside } from "./line/settings.ts";
+export { readStack, stackDescription } from "./line/stack-file.ts";
+export { formatWhen, parseWhen } from "./line/zoned-time.ts";
+export type * from "./outlook.ts";
+export type { FileSystem, Ports } from "./ports.ts";
+export { changeAt } from "./record/change-steps.ts";
+export { openChange } from "./record/changes.ts";
+export type { Quantity, StepSettings } from "./record/entries.ts";
+export { changeId, parseChangeId, parseProposalId, proposalId } from "./record/ids.ts";
+export { safeText } from "./record/safe-text.ts";
+export { stepsOf } from "./record/steps.ts";
+export { reportMarkdown } from "./report/report.ts";

@@ -1,0 +1,10 @@
+/** How `npm test` runs: every test but the slow ones (crash, soak, package, terminal), which have their own file. */
+import { defineConfig } from "vitest/config";
+
+export default defineConfig({
+  test: {
+    include: ["test/**/*.test.ts", "test/**/*.test.tsx"],
+    exclude: ["test/slow/**"],
+    testTimeout: 30_000,
+  },
+});
