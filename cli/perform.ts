@@ -78,7 +78,8 @@ export function errorDocument(error: unknown): Record<string, unknown> {
 
 export function problemText(p: Problem): string {
   const where = [p.file, p.row, p.column].filter((v) => v !== undefined).join(":");
-  return safeText(`${where ? `${where}: ` : ""}${p.message}${p.hint ? `\n  ${p.hint}` : ""}`);
+  const lines = [`${where ? `${where}: ` : ""}${p.message}`, ...(p.hint ? [`  ${p.hint}`] : [])];
+  return lines.map(safeText).join("\n");
 }
 
 export function errorText(error: unknown): string {

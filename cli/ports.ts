@@ -5,7 +5,7 @@
 import { randomUUID } from "node:crypto";
 import fs from "node:fs";
 import os from "node:os";
-import type { FileSystem, Ports } from "../recipes/ports.ts";
+import type { FileSystem, Ports } from "../recipes/index.ts";
 
 const WINDOWS = process.platform === "win32";
 /** How long a rename is tried again on Windows, where a virus scanner may hold the file for a moment. */

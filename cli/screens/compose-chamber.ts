@@ -72,7 +72,9 @@ function numbers(chamber: ChamberState, width: number, height: number, look: Loo
     height: Math.max(3, Math.min(chamber.view.settings.length + 1, height - expected.length - 3)),
     look,
   });
-  const used = settings.length + expected.length + 2;
+  // The blank before the last block goes first when room is short.
+  const gap: Row[] = height - settings.length - expected.length - 2 >= 2 ? [[]] : [];
+  const used = settings.length + expected.length + 1 + gap.length;
   const standing = standingRows(chamber, { width, height: Math.max(0, height - used), look });
-  return [...settings, [], ...expected, [], ...standing];
+  return [...settings, [], ...expected, ...gap, ...standing];
 }

@@ -40,8 +40,9 @@ export function reduce(state: State, event: Event): Step {
         ...state.layers,
         { kind: "proposal", chamber: event.chamber, proposal: event.proposal, scroll: 0 } as const,
       ];
-      const asked = state.chamber !== null && state.chamber.view.chamber === event.chamber;
-      const known = asked ? withChamber(state, { ...state.chamber.view, proposal: event.proposal }, false) : state;
+      const view = state.chamber?.view;
+      const known =
+        view?.chamber === event.chamber ? withChamber(state, { ...view, proposal: event.proposal }, false) : state;
       const id = event.proposal.proposal;
       const text = `${event.chamber}: ${adviceInWords(event.proposal.advice)}${id === null ? "" : `, kept as ${id}`}`;
       return still(say({ ...known, layers, busy: null }, "plain", text));

@@ -50,6 +50,8 @@ export function right(text: string, width: number, mark = "…"): string {
 /** Lines of at most `width` cells, broken at spaces; a word longer than a line is broken where it must. */
 export function wrap(text: string, width: number): string[] {
   if (width <= 0) return [];
+  // What fits stays as it is, columns lined up with blanks included.
+  if (cells(text) <= width) return [text];
   const lines: string[] = [];
   let line = "";
   for (let word of text.split(/ +/)) {

@@ -148,10 +148,10 @@ export function decide(q: Question): Answer {
       ...outsideNow.map((f) => f.sentence),
     ]);
   if (outsideNow.length === 0 && reached) {
-    if (!moved || gain <= deadBand[mode] || better < worthwhile[mode])
-      return finish("keep", q.before, keepReasons(q, now, then, best.settings, mode));
     const doubt = openDoubt(q);
     if (doubt) return finish("measure", q.before, [doubt]);
+    if (!moved || gain <= deadBand[mode] || better < worthwhile[mode])
+      return finish("keep", q.before, keepReasons(q, now, then, best.settings, mode));
   }
   const anchor = q.anchor ? anchorUse(q.anchor, best.settings, q.line).filter((use) => use.past) : [];
   if (anchor.length > 0 && !q.overridden.has("past_anchor")) {
@@ -252,16 +252,30 @@ function attainableChance(q: Question, best: Expectation): number {
   return chanceOf(law, q.goal, names, q.light);
 }
 
+/** Joint probability that the last reading was bad or the chamber stepped, between which nothing is decided yet. */
+const undecided: readonly [number, number] = [0.25, 0.93];
+
 /**
- * Is there an open doubt about the last reading that would turn the answer? If it may be a bad measurement, and the film
- * expected without it is in goal, one more run is worth more than a change.
+ * Is there an open doubt about the last reading that would turn the answer? A reading out of goal where the film was
+ * expected in goal is a bad measurement (keep) or a step nobody logged (change): one more run tells, and costs less than
+ * either mistake.
  */
 function openDoubt(q: Question): string | null {
   const last = q.record.at(-1);
-  if (!last || last.suspect < 0.25) return null;
-  const without = { index: last.expectedIndex.mean, thicknessNm: last.expectedThickness.mean };
-  if (!filmInside(q, without.index, without.thicknessNm)) return null;
-  return `The last reading (entry ${last.entry}) is a bad measurement with ${asPercent(last.suspect)} probability; without it the film was expected in goal (index ${without.index.toFixed(3)}, ${without.thicknessNm.toFixed(1)} nm). Measure that wafer again, or run once more as it is.`;
+  if (!last) return null;
+  const doubt = last.suspect + last.step;
+  if (doubt < undecided[0] || doubt > undecided[1]) return null;
+  const expected = { index: last.expectedIndex.mean, thicknessNm: last.expectedThickness.mean };
+  const read = { index: last.index ?? expected.index, thicknessNm: last.thicknessNm ?? expected.thicknessNm };
+  if (!filmInside(q, expected.index, expected.thicknessNm) || filmInside(q, read.index, read.thicknessNm)) return null;
+  return `The last reading (entry ${last.entry}: index ${read.index.toFixed(3)}, ${read.thicknessNm.toFixed(1)} nm) is out of goal where index ${expected.index.toFixed(3)}, ${expected.thicknessNm.toFixed(1)} nm was expected: a bad measurement with ${asPercent(last.suspect)} probability, a step nobody logged with ${asPercent(last.step)}. Measure that wafer again, or run once more as it is.`;
+}
+
+/** A reading left aside as bad is said, so that nobody wonders why it moved nothing. */
+function leftAside(q: Question): string | null {
+  const last = q.record.at(-1);
+  if (!last || last.suspect <= undecided[1] - last.step) return null;
+  return `The last reading (entry ${last.entry}) is a bad measurement with ${asPercent(last.suspect)} probability and is left aside: a wrong wafer, swapped rows or a slip of units?`;
 }
 
 function opening(q: Question, now: Expectation): string[] {
@@ -272,6 +286,8 @@ function opening(q: Question, now: Expectation): string[] {
   if (!q.stated)
     out.push("No recipe was ever stated for this chamber: the settings of its latest run are taken as in force.");
   out.push(expectSentence("At the recipe in force", now, q.light));
+  const aside = leftAside(q);
+  if (aside) out.push(aside);
   const sisters = sistersSentence(q.model);
   if (sisters) out.push(sisters);
   if (q.awaitingReadings > 0)

@@ -3,7 +3,7 @@
  * change. Everything the verbs and screens do goes through here; it decides nothing itself.
  */
 import { LineModel } from "../../calibration/index.ts";
-import { type CoatedWafer, refuse } from "../../engine/index.ts";
+import { type CoatedWafer, Refusal, refuse } from "../../engine/index.ts";
 import { type CellLight, cellLight, minimumOf } from "../advice/cell-light.ts";
 import { type Chamber, type Goal, goalOf, type Line } from "../line/line.ts";
 import { lineWafer } from "../line/line-wafer.ts";
@@ -84,6 +84,8 @@ export class Workspace {
 
   /** The recipe meant: the one named, else the only one the chamber runs. Throws `which-recipe`, `no-recipe`. */
   recipe(chamber: string, named?: string): string {
+    // What stands before the damage is not the chamber's story: better no answer than one from half a book.
+    if (this.book.damage.length > 0) throw new Refusal(this.book.problems());
     if (named !== undefined) return named;
     const known = recipesOf(this.ledger, chamber);
     if (known.length === 1) return known[0];

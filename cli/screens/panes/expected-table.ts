@@ -5,14 +5,14 @@ import type { Interval, Outlook } from "../../../recipes/index.ts";
 import type { Look, Tone } from "../../palette.ts";
 import { signs } from "../../palette.ts";
 import { chanceText, fixed, withHalf } from "../../text/numbers.ts";
-import { type Paper, type Row, type Segment, toWidth, words } from "../../text/rows.ts";
+import { type Paper, type Row, rowCells, type Segment, toWidth, words } from "../../text/rows.ts";
 import { left } from "../../text/width.ts";
 import type { ChamberState } from "../state.ts";
 import { draftName } from "./settings-table.ts";
 
 const labelWidth = 13;
 
-/** Eight rows, and one more for each sentence about the window. */
+/** Eight rows, one more where two colours need it, and one for each sentence about the window. */
 export function expectedRows(chamber: ChamberState, paper: Paper): Row[] {
   const { look, width } = paper;
   const { now, goal } = chamber.view;
@@ -88,7 +88,7 @@ export function expectedRows(chamber: ChamberState, paper: Paper): Row[] {
       "lost mA/cm2",
       [now, after].map((o): Segment[] => [{ text: lossText(o) }]),
     ),
-    colourRow(now, after, column, look),
+    ...colourRows(now, after, column, look),
   ];
   for (const sentence of (after ?? now).outsideWindow)
     rows.push([{ text: "OUTSIDE ", tone: "alarm" }, words(sentence, look)]);
@@ -109,15 +109,23 @@ function lossText(outlook: Outlook | null): string {
   return fixed(outlook.current.reflected + outlook.current.absorbedInFilm, 2);
 }
 
-/** The label carries the swatches, so that the words beside keep their whole column. */
-function colourRow(now: Outlook, after: Outlook | null, column: number, look: Look): Row {
-  const patch = (outlook: Outlook | null): Segment[] =>
-    outlook?.colour && (look.colour === "true" || look.colour === "256")
-      ? [{ text: "  ", ground: outlook.colour.hex }]
+/** Side by side where the words fit their columns, else one under the other, each with its sign. */
+function colourRows(now: Outlook, after: Outlook | null, column: number, look: Look): Row[] {
+  const sign = signs(look);
+  const patch = (outlook: Outlook): Segment[] =>
+    outlook.colour !== null && (look.colour === "true" || look.colour === "256")
+      ? [{ text: "  ", ground: outlook.colour.hex }, { text: " " }]
       : [];
-  const said = (outlook: Outlook | null) => words(outlook === null ? "" : (outlook.colour?.words ?? "-"), look);
-  const label: Row = [{ text: "colour " }, ...patch(now), { text: " " }, ...patch(after)];
-  return [...toWidth(label, labelWidth), ...toWidth([said(now)], column), ...toWidth([said(after)], column)];
+  const said = (outlook: Outlook): Segment[] => [...patch(outlook), words(outlook.colour?.words ?? "-", look)];
+  const label = left("colour", labelWidth);
+  if (after === null) return [[{ text: label }, ...said(now)]];
+  if (rowCells(said(now)) < column && rowCells(said(after)) < column) {
+    return [[{ text: label }, ...toWidth(said(now), column), ...toWidth(said(after), column)]];
+  }
+  return [
+    [{ text: label }, { text: `${sign.now} `, tone: "now" }, ...said(now)],
+    [{ text: " ".repeat(labelWidth) }, { text: `${sign.after} `, tone: "after" }, ...said(after)],
+  ];
 }
 
 function toleranceText(goal: { value: number; within: number } | undefined, decimals: number): string {

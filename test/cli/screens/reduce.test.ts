@@ -145,6 +145,44 @@ describe("the what-if", () => {
   });
 });
 
+describe("a proposal", () => {
+  const better = new Map(chamber.chamber?.draft).set("silane", 835);
+  const proposal = {
+    proposal: "p-000042",
+    advice: "change",
+    after: fakeOutlook(better),
+    because: [],
+    cannotTell: [],
+    alarms: [],
+    cautions: [],
+    done: false,
+  } as const;
+  const asked = press(chamber, { kind: "proposed", chamber: "A2", proposal }, "q").state;
+
+  test("becomes what is shown beside the settings in force", () => {
+    expect(asked.chamber?.draft.get("silane")).toBe(835);
+    expect(asked.chamber?.after).toBe(proposal.after);
+  });
+
+  test("stays while what it rests on stands, even where the desk does not hand it out again", () => {
+    const read = press(asked, { kind: "chamber", view: { ...desk.chamber("A2"), proposal: null }, open: false }).state;
+    expect(read.chamber?.view.proposal?.proposal).toBe("p-000042");
+  });
+
+  test("is gone after a further run", () => {
+    const view = desk.chamber("A2");
+    const runs = [...view.runs, { ...view.runs[view.runs.length - 1], entry: 999 }];
+    const read = press(asked, { kind: "chamber", view: { ...view, runs, proposal: null }, open: false }).state;
+    expect(read.chamber?.view.proposal).toBeNull();
+    expect(read.chamber?.draft.get("silane")).toBe(812);
+  });
+
+  test("of another chamber does not touch the one open", () => {
+    const other = press(chamber, { kind: "proposed", chamber: "B1", proposal }).state;
+    expect(other.chamber?.view.proposal).toBeNull();
+  });
+});
+
 describe("commands that cannot be given", () => {
   test.each([
     ["a", "p asks for a proposal"],

@@ -99,6 +99,12 @@ describe("the frame writer", () => {
     expect(sent[0].endsWith("\u001b[?2026l")).toBe(true);
   });
 
+  test("erases the rest of a short line, but never after a full one, whose last character some terminals would lose", () => {
+    const { sent, writer } = stage(20, 2);
+    writer.write(`${"x".repeat(20)}\nshort`);
+    expect(sent[0]).toContain(`${"x".repeat(20)}\u001b[0m\u001b[2;1Hshort\u001b[0m\u001b[K`);
+  });
+
   test("writes nothing once it is shut", () => {
     const { sent, writer } = stage(80, 24);
     writer.shut();

@@ -1,5 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, test } from "vitest";
+import { due, goalInBrief, sentenceInBrief } from "../../../cli/text/line-words.ts";
 import { chanceText, chanceWord, fixed, settingText, signed, withHalf } from "../../../cli/text/numbers.ts";
 import { overviewText } from "../../../cli/text/overview.ts";
 import { painted, rowCells, rowText, toWidth, words } from "../../../cli/text/rows.ts";
@@ -73,6 +74,31 @@ describe("width", () => {
     expect(lines.join(" ")).toBe(text);
     for (const line of lines) expect(cells(line)).toBeLessThanOrEqual(20);
     expect(wrap("abcdefghij", 4)).toEqual(["abcd", "efgh", "ij"]);
+    expect(wrap("silane    835 sccm", 20)).toEqual(["silane    835 sccm"]);
+  });
+});
+
+describe("words for the line", () => {
+  test("the goal in brief names every goal there is, and only those", () => {
+    expect(goalInBrief(new FakeDesk().overview().goal)).toBe(
+      "index 2.06 ±0.02, 88 ±2 nm, R at most 2.5 %, minimum 600 ±15 nm",
+    );
+    expect(goalInBrief({ thicknessNm: { value: 80, within: 2 } })).toBe("80 ±2 nm");
+  });
+
+  test("a sentence loses its advice first, then whole clauses, never part of one", () => {
+    const sentence = "4 runs since clean, thickness 2.3 nm low, 19 % in goal: ask for a proposal";
+    expect(sentenceInBrief(sentence, 80)).toBe(sentence);
+    expect(sentenceInBrief(sentence, 60)).toBe("4 runs since clean, thickness 2.3 nm low, 19 % in goal");
+    expect(sentenceInBrief(sentence, 45)).toBe("4 runs since clean, thickness 2.3 nm low");
+  });
+
+  test("each need has a word of its own that begins in capitals, so that it reads without colour", () => {
+    const row = new FakeDesk().overview().chambers[0];
+    const needs = ["fault", "propose", "measure", "enter", "close", "keep", "no data"] as const;
+    const texts = needs.map((attention) => due({ ...row, attention }).text);
+    expect(new Set(texts).size).toBe(needs.length);
+    for (const text of texts) expect(text).toMatch(/^[A-Z ]+: [a-z]/);
   });
 });
 

@@ -12,7 +12,7 @@ import { lockHolder } from "../../../recipes/record/lock.ts";
 import { BOOK_PATH, bookOf, copyOf, FOLDER, runDraft, runNumbers } from "../../support/book-bench.ts";
 import { appendTwo, callsNeeded, expectSound, STARTS } from "../../support/book-faults.ts";
 import { type Fault, faultyFiles, Killed } from "../../support/faulty-files.ts";
-import { memoryPorts, seededRandom } from "../../support/memory-files.ts";
+import { MemoryFiles, memoryPorts, seededRandom } from "../../support/memory-files.ts";
 
 /** One of each answer; which code gives which answer is asked in file-trouble.test.ts. */
 const CODES = ["EIO", "ENOSPC", "EROFS"];
@@ -151,6 +151,22 @@ describe("single failures of an append", () => {
     expect((await again.append(runDraft(3))).seq).toBe(2);
   });
 
+  it("when the folder of a new book cannot be synced, nothing is acknowledged: also not after a killed first append", async () => {
+    for (const killedFirst of [false, true]) {
+      const files = new MemoryFiles();
+      if (killedFirst) {
+        // killed between syncing the book and putting book.head in place: the entry is whole, its file's name is not safe
+        const dying = faultyFiles(files, { at: 2, how: "killed", only: ["rename"] });
+        await expect(Book.open(FOLDER, memoryPorts(dying)).append(runDraft(0))).rejects.toBeInstanceOf(Killed);
+        expect(runNumbers(Book.open(FOLDER, memoryPorts(files)))).toEqual([0]);
+      }
+      files.put("/line/.gitattributes", "book.jsonl -text\n");
+      const faulty = faultyFiles(files, { at: 1, how: "EIO", from: "from then on", only: ["syncFolder"] });
+      const ports = memoryPorts(faulty, { pid: 9, processAlive: (pid) => pid === 9 });
+      await expect(Book.open(FOLDER, ports).append(runDraft(1))).rejects.toMatchObject({ code: "unsafe-after-fsync" });
+    }
+  });
+
   it("on a read-only medium reading works and writing fails before any work", async () => {
     const { files } = await bookOf(2);
     const writing = ["createExclusive", "openAppend", "openReadWrite", "rename", "link", "remove", "write", "truncate"];
@@ -185,5 +201,39 @@ describe("power loss", () => {
       }
     }
     expect(images).toBeGreaterThan(400);
+  });
+
+  it("after an error at the Nth call that was lived through, loses nothing acknowledged either", async () => {
+    for (const start of STARTS) {
+      const calls = await callsNeeded(start);
+      for (let at = 1; at <= calls; at++) {
+        for (const from of ["once", "from then on"] as const) {
+          const files = await start.files();
+          const { acknowledged } = await appendTwo(files, { at, how: "EIO", from });
+          for (let seed = 0; seed < 3; seed++) {
+            const found = files.afterPowerLoss(seededRandom(at * 1000 + seed * 7919));
+            await expectSound(found, [...start.acknowledged, ...acknowledged], `${start.name}, EIO ${from} at ${at}`);
+          }
+        }
+      }
+    }
+  });
+
+  it("while a torn tail is set aside leaves its bytes in the book or in the torn file", async () => {
+    const [, , torn] = STARTS;
+    const calls = await callsNeeded(torn);
+    const before = await torn.files();
+    const tail = before.text(BOOK_PATH).split("\n").at(-1) ?? "";
+    expect(tail.length).toBeGreaterThan(10);
+    for (let at = 1; at <= calls; at++) {
+      for (let seed = 0; seed < 8; seed++) {
+        const files = await torn.files();
+        await appendTwo(files, { at, how: "killed" });
+        const found = files.afterPowerLoss(seededRandom(at * 1000 + seed * 31));
+        const kept = found.list(FOLDER).filter((name) => name === "book.jsonl" || name.startsWith("book.torn-"));
+        const holding = kept.filter((name) => found.text(`${FOLDER}/${name}`).includes(tail));
+        expect(holding.length, `power lost at call ${at}, seed ${seed}`).toBeGreaterThan(0);
+      }
+    }
   });
 });

@@ -8,7 +8,7 @@ import type { Damage } from "../../../recipes/record/damage.ts";
 import { BOOK_PATH, bookOf, copyOf, FOLDER, HEAD_PATH, runDraft } from "../../support/book-bench.ts";
 import { type MemoryFiles, memoryPorts } from "../../support/memory-files.ts";
 
-const ENTRIES = 6;
+const ENTRIES = 5;
 let good: MemoryFiles;
 let bytes: Uint8Array;
 let starts: number[];
