@@ -6,13 +6,12 @@ import { mkdtempSync, readFileSync, rmSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join, resolve } from "node:path";
 import { Refusal, refuse } from "../engine/index.ts";
-import { createLine, holdsLine, overview, type Workspace } from "../recipes/index.ts";
+import { creating, holdsLine, overview, type Workspace } from "../recipes/index.ts";
 import { argsFromWords } from "./args.ts";
 import { converse } from "./converse.ts";
 import { errorDocument, errorText, exitOf, perform, type World, workspaceFor } from "./perform.ts";
 import { realPorts } from "./ports.ts";
 import { generalHelp, verbHelp } from "./text/help.ts";
-import { overviewText } from "./text/overview.ts";
 import { findVerb } from "./verbs/table.ts";
 
 declare const COATWRIGHT_VERSION: string;
@@ -100,7 +99,7 @@ async function bare(argv: readonly string[]): Promise<number> {
   const ws: Workspace =
     scratch === null
       ? workspaceFor(world, named)
-      : await createLine(scratch, world.ports, { demo: true, timeZone: "UTC", scratch: true });
+      : await (await creating()).createLine(scratch, world.ports, { demo: true, timeZone: "UTC", scratch: true });
   const terminal =
     process.stdout.isTTY && process.stdin.isTTY && process.env["TERM"] !== "dumb" && !argv.includes("--json");
   if (terminal) {
@@ -120,6 +119,8 @@ async function bare(argv: readonly string[]): Promise<number> {
         2,
       ),
     );
+  // Loaded only here: measuring the width of text costs every other verb 50 ms at start.
+  const { overviewText } = await import("./text/overview.ts");
   process.stdout.write(
     overviewText(line, { colour: false, ascii: argv.includes("--ascii"), width: process.stdout.columns ?? 100 }),
   );

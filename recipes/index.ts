@@ -16,8 +16,6 @@ export {
 } from "./desk/asking.ts";
 export { adopt, approve, type Changed, close, enter, sheetOf, undo } from "./desk/changing.ts";
 export { checkLine } from "./desk/checking.ts";
-export { createLine } from "./desk/creating.ts";
-export { importRuns } from "./desk/importing.ts";
 export { learned } from "./desk/learned.ts";
 export { chamberView, overview, proposalView, runsSeen, whatIf } from "./desk/looking.ts";
 export {
@@ -37,6 +35,9 @@ export { asQuantities, asQuantity, type GivenSettings, parseSet, shown, snapInsi
 export { readStack, stackDescription } from "./line/stack-file.ts";
 export { formatWhen, parseWhen } from "./line/zoned-time.ts";
 export type * from "./outlook.ts";
+/** Loaded when asked for: CSV reading, and the demo's virtual chambers, are no part of what a proposal waits for. */
+export const importing = () => import("./desk/importing.ts");
+export const creating = () => import("./desk/creating.ts");
 export type { FileSystem, Ports } from "./ports.ts";
 export { changeAt } from "./record/change-steps.ts";
 export { openChange } from "./record/changes.ts";

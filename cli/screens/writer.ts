@@ -81,7 +81,7 @@ export class FrameWriter extends EventEmitter {
       if (this.clearFirst && line === "") continue;
       // Erasing to the end of the line would eat the last character of a full one: the cursor still stands on it.
       const full = cells(line.replace(styles, "")) >= this.columns;
-      body += `\u001b[${row + 1};1H${line}\u001b[0m${"\u001b[K"}`;
+      body += `\u001b[${row + 1};1H${line}\u001b[0m${full ? "" : "\u001b[K"}`;
     }
     this.shown = lines;
     this.clearFirst = false;

@@ -13,7 +13,6 @@ import {
   propose,
 } from "../../recipes/index.ts";
 import { chamberText, predictedText, proposalText } from "../text/answers.ts";
-import { overviewText } from "../text/overview.ts";
 import { chamberFlag, flag, type Outcome, settingsFlag, type Verb, word } from "./verb.ts";
 
 function modeOf(text: string | undefined): Mode | null {
@@ -87,10 +86,11 @@ export const askVerbs: Verb[] = [
     flags: [],
     examples: ["coatwright chamber A2"],
     writes: false,
-    run: (call) => {
+    run: async (call) => {
       const ws = call.workspace();
       const name = call.args.text("name");
       if (name === undefined) {
+        const { overviewText } = await import("../text/overview.ts");
         const line = overview(ws);
         return { document: lineDocument(line), text: overviewText(line, { colour: false, ascii: false, width: 100 }) };
       }

@@ -3,8 +3,8 @@ import { filmStack } from "../../engine/index.ts";
 import {
   changeAt,
   checkLine,
-  createLine,
-  importRuns,
+  creating,
+  importing,
   parseChangeId,
   readStack,
   reportMarkdown,
@@ -25,6 +25,7 @@ export const fileVerbs: Verb[] = [
       const dir = call.args.need("dir");
       const folder = call.resolve(dir);
       const timeZone = Intl.DateTimeFormat().resolvedOptions().timeZone || "UTC";
+      const { createLine } = await creating();
       const ws = await createLine(folder, call.ports, { demo: call.args.switch("demo"), timeZone });
       const entries = ws.ledger.entries.length;
       return {
@@ -77,6 +78,7 @@ export const fileVerbs: Verb[] = [
     run: async (call) => {
       const file = call.args.need("file");
       const map = call.args.text("map");
+      const { importRuns } = await importing();
       const done = await importRuns(
         call.workspace(),
         { file, bytes: call.readFile(file), map: map === undefined ? null : { file: map, bytes: call.readFile(map) } },

@@ -211,5 +211,5 @@ function reinstate(ledger: Ledger, ended: Change): void {
   else if (open) {
     target.state = "superseded";
     target.supersededBy = open.seq;
-  } else target.state = "closed";
+  } else target.state = "entered";
 }

@@ -2,72 +2,72 @@
  * Is the data of an entry of the right shape for its kind? Asked before writing, so that nothing odd enters the book,
  * and on reading, so that the rest of the program can rely on the types of entries.ts.
  */
-import { z } from "zod";
+import * as z from "zod/mini";
 import type { EntryData, Kind } from "./entries.ts";
 import { isPlainRun } from "./plain-run.ts";
 
+const textOf = (most: number, least = 0) => z.string().check(z.minLength(least), z.maxLength(most));
+const between = (low: number, high: number) => z.number().check(z.gte(low), z.lte(high));
+const whole = (low: number, high: number) => z.int().check(z.gte(low), z.lte(high));
+const list = <T extends z.ZodMiniType>(of: T, most: number, least = 0) =>
+  z.array(of).check(z.minLength(least), z.maxLength(most));
+const maybe = <T extends z.ZodMiniType>(type: T) => z.optional(type);
+
 /** Longest free text in an entry, characters: a page, so that a pasted log file is refused. */
-const text = z.string().max(4000);
-const name = z.string().min(1).max(200);
-const count = z.int().min(0).max(1_000_000_000);
-const number = z.number();
+const text = textOf(4000);
+/** A file's text: line.yaml of a large line with comments. */
+const file = textOf(200_000);
+const name = textOf(200, 1);
+const count = whole(0, 1_000_000_000);
+const positive = whole(1, 1_000_000_000);
 const anything = z.record(z.string(), z.unknown());
-const quantity = z.strictObject({ value: number, unit: z.string().max(40) });
-const steps = z
-  .array(z.strictObject({ name: name.optional(), settings: z.record(name, quantity) }))
-  .min(1)
-  .max(50);
-const index = number.min(0).max(100).optional();
-const thickness = number.min(0).max(1_000_000).optional();
+const quantity = z.strictObject({ value: z.number(), unit: textOf(40) });
+const steps = list(z.strictObject({ name: maybe(name), settings: z.record(name, quantity) }), 50, 1);
+const index = maybe(between(0, 100));
+const thickness = maybe(between(0, 1_000_000));
 const reading = z.strictObject({
   gauge: name,
   on: z.enum(["polished", "cell"]),
   index,
   thickness_nm: thickness,
-  weighted_reflectance_percent: number.min(0).max(100).optional(),
-  reflectance_minimum_nm: number.min(0).max(1_000_000).optional(),
-  sites: z.int().min(1).max(100_000).optional(),
-  site_values: z
-    .array(z.strictObject({ position: text.optional(), site: text.optional(), index, thickness_nm: thickness }))
-    .max(10_000)
-    .optional(),
-  spectrum: name.optional(),
+  weighted_reflectance_percent: maybe(between(0, 100)),
+  reflectance_minimum_nm: maybe(between(0, 1_000_000)),
+  sites: maybe(whole(1, 100_000)),
+  site_values: maybe(
+    list(z.strictObject({ position: maybe(text), site: maybe(text), index, thickness_nm: thickness }), 10_000),
+  ),
+  spectrum: maybe(name),
 });
-const hash = z.string().regex(/^[0-9a-f]{64}$/);
+const hash = z.string().check(z.regex(/^[0-9a-f]{64}$/));
 
-const SCHEMAS: { [K in Kind]: z.ZodType<EntryData[K]> } = {
-  line: z.strictObject({ line: name, created_by: name, line_file: z.string().max(200_000) }),
-  "line file": z.strictObject({
-    before: z.string().max(200_000),
-    after: z.string().max(200_000),
-    difference: z.array(text).max(1000),
-    loosened: z.array(text).max(1000),
-  }),
+const SCHEMAS: { [K in Kind]: z.ZodMiniType<EntryData[K]> } = {
+  line: z.strictObject({ line: name, created_by: name, line_file: file }),
+  "line file": z.strictObject({ before: file, after: file, difference: list(text, 1000), loosened: list(text, 1000) }),
   run: z.strictObject({
     chamber: name,
     recipe: name,
     settings_from: name,
     steps,
-    step: name.optional(),
-    count: count.min(1),
-    since_clean: count.optional(),
-    kind: z.enum(["tuning", "production"]).optional(),
-    boat: text.optional(),
-    position: text.optional(),
-    readings: z.array(reading).max(100),
-    note: text.optional(),
-    imported_from: z.strictObject({ file: text, row: count }).optional(),
+    step: maybe(name),
+    count: positive,
+    since_clean: maybe(count),
+    kind: maybe(z.enum(["tuning", "production"])),
+    boat: maybe(text),
+    position: maybe(text),
+    readings: list(reading, 100),
+    note: maybe(text),
+    imported_from: maybe(z.strictObject({ file: text, row: count })),
   }),
-  reading: z.strictObject({ run: count, reading, note: text.optional() }),
-  recipe: z.strictObject({ chamber: name, recipe: name, steps, reason: text.optional() }),
-  clean: z.strictObject({ chamber: name, what: text.optional() }),
-  precoat: z.strictObject({ chamber: name, count: count.min(1) }),
+  reading: z.strictObject({ run: count, reading, note: maybe(text) }),
+  recipe: z.strictObject({ chamber: name, recipe: name, steps, reason: maybe(text) }),
+  clean: z.strictObject({ chamber: name, what: maybe(text) }),
+  precoat: z.strictObject({ chamber: name, count: positive }),
   service: z.strictObject({ chamber: name, what: text }),
   gauge: z.strictObject({ gauge: name, reference: z.literal(true), index, thickness_nm: thickness }),
   note: z.strictObject({
-    chamber: name.optional(),
+    chamber: maybe(name),
     text,
-    override: z.strictObject({ alarm: name, runs: count.min(1), chamber: name }).optional(),
+    override: maybe(z.strictObject({ alarm: name, runs: positive, chamber: name })),
   }),
   proposal: z.strictObject({
     chamber: name,
@@ -75,7 +75,7 @@ const SCHEMAS: { [K in Kind]: z.ZodType<EntryData[K]> } = {
     basis: hash,
     document: anything,
     goal: anything,
-    window: z.array(text).max(1000),
+    window: list(text, 1000),
   }),
   adopt: z.strictObject({
     proposal: count,
@@ -85,7 +85,7 @@ const SCHEMAS: { [K in Kind]: z.ZodType<EntryData[K]> } = {
     before: steps,
     after: steps,
     predicted: anything,
-    supersedes: count.optional(),
+    supersedes: maybe(count),
   }),
   approve: z.strictObject({ change: count }),
   enter: z.strictObject({ change: count, read_back: steps }),
@@ -94,7 +94,7 @@ const SCHEMAS: { [K in Kind]: z.ZodType<EntryData[K]> } = {
     verdict: text,
     expected: anything,
     got: anything,
-    runs: z.array(count).max(100_000),
+    runs: list(count, 100_000),
   }),
   undo: z.strictObject({
     change: count,
@@ -102,13 +102,13 @@ const SCHEMAS: { [K in Kind]: z.ZodType<EntryData[K]> } = {
     chamber: name,
     recipe: name,
     cancelled: z.boolean(),
-    supersedes: count.optional(),
+    supersedes: maybe(count),
     before: steps,
     after: steps,
   }),
   correct: z.strictObject({ entry: count, fields: anything, reason: text }),
   torn: z.strictObject({ file: name, bytes: count }),
-  import: z.strictObject({ file: text, entries: count.max(1_000_000), skipped: count }),
+  import: z.strictObject({ file: text, entries: whole(0, 1_000_000), skipped: count }),
 };
 
 /** Is this a kind of entry we know? */

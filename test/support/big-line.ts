@@ -2,7 +2,8 @@
 import { readFileSync, writeFileSync } from "node:fs";
 import { realPorts } from "../../cli/ports.ts";
 import { random } from "../../engine/index.ts";
-import { createLine, Workspace } from "../../recipes/index.ts";
+import { createLine } from "../../recipes/desk/creating.ts";
+import { Workspace } from "../../recipes/index.ts";
 import { DEMO_LINE } from "../../recipes/line/template.ts";
 import type { AnyDraft } from "../../recipes/record/entries.ts";
 import { virtualChamber } from "../../recipes/rehearsal/virtual-chamber.ts";

@@ -1,7 +1,8 @@
 /** Line folders in memory for tests of the desk: the demo line, or a line of virtual chambers whose truth is known. */
 
 import { random } from "../../engine/index.ts";
-import { createLine, LINE_FILE, Workspace } from "../../recipes/index.ts";
+import { createLine } from "../../recipes/desk/creating.ts";
+import { LINE_FILE, Workspace } from "../../recipes/index.ts";
 import { DEMO_LINE } from "../../recipes/line/template.ts";
 import type { AnyDraft, EntryData } from "../../recipes/record/entries.ts";
 import { type VirtualChamber, virtualChamber } from "../../recipes/rehearsal/virtual-chamber.ts";

@@ -3,7 +3,9 @@ import { spawnSync } from "node:child_process";
 import { mkdtempSync, rmSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
+import { pathToFileURL } from "node:url";
 import * as esbuild from "esbuild";
+import { PROJECT } from "./source-tree.ts";
 
 export interface Ended {
   status: number | null;
@@ -20,9 +22,8 @@ export interface Program {
 
 export async function program(): Promise<Program> {
   const folder = mkdtempSync(join(tmpdir(), "coatwright-test-"));
-  const { build } = (await import("../../build.mjs")) as {
-    build(options: { out: string; esbuild: unknown }): Promise<unknown>;
-  };
+  const script = pathToFileURL(join(PROJECT, "build.mjs")).href;
+  const { build } = (await import(script)) as { build(options: { out: string; esbuild: unknown }): Promise<unknown> };
   const out = join(folder, "dist");
   await build({ out, esbuild });
   return {

@@ -2,7 +2,7 @@
  * What an import map says about a foreign file: which heading means what, what to ignore, how numbers and columns are
  * separated. The file is YAML; it arrives here already read.
  */
-import { z } from "zod";
+import * as z from "zod/mini";
 import { type Problem, Refusal } from "../../../engine/index.ts";
 
 export interface ImportMap {
@@ -51,16 +51,26 @@ const ENCODINGS: Record<string, ImportMap["encoding"]> = {
 };
 
 /** YAML readers differ in whether they give numbers or text for a plain 3. */
-const lines = z.union([z.number(), z.string()]).transform((given) => Number(given));
+const lines = z.pipe(
+  z.pipe(
+    z.union([z.number(), z.string()]),
+    z.transform((given) => Number(given)),
+  ),
+  z.int().check(z.gte(0), z.lte(10_000)),
+);
+const oneOrMore = z.pipe(
+  z.union([z.string(), z.array(z.string())]),
+  z.transform((given) => (typeof given === "string" ? [given] : given)),
+);
 
 const shape = z.strictObject({
-  columns: z.record(z.string(), z.string()).optional(),
-  ignore: z.union([z.string().transform((one) => [one]), z.array(z.string())]).optional(),
-  skip_lines: lines.pipe(z.int().min(0).max(10_000)).optional(),
-  decimal: z.enum([".", ",", "point", "comma"]).optional(),
-  separator: z.string().optional(),
-  encoding: z.string().optional(),
-  time_zone: z.string().optional(),
+  columns: z.optional(z.record(z.string(), z.string())),
+  ignore: z.optional(oneOrMore),
+  skip_lines: z.optional(lines),
+  decimal: z.optional(z.enum([".", ",", "point", "comma"])),
+  separator: z.optional(z.string()),
+  encoding: z.optional(z.string()),
+  time_zone: z.optional(z.string()),
 });
 
 function zoneExists(zone: string): boolean {

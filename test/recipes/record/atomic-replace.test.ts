@@ -5,7 +5,9 @@ import { join } from "node:path";
 import { describe, expect, it } from "vitest";
 import { realPorts } from "../../../cli/ports.ts";
 import { hashOfFile, replaceFile } from "../../../recipes/record/atomic-replace.ts";
+import { Book } from "../../../recipes/record/book.ts";
 import { sha256 } from "../../../recipes/record/canonical.ts";
+import { leftovers } from "../../../recipes/record/leftovers.ts";
 import { faultyFiles, Killed } from "../../support/faulty-files.ts";
 import { MemoryFiles, memoryPorts, seededRandom } from "../../support/memory-files.ts";
 
@@ -81,6 +83,22 @@ describe("replacing a file", () => {
         expect(done ? ["new"] : ["old text", "new"], `killed at ${at}`).toContain(text);
       }
     }
+  });
+
+  it("killed half-way, leaves a file that check can name; a line folder at rest has none", async () => {
+    const named = new Set<string>();
+    for (let at = 1; at < 40; at++) {
+      const files = new MemoryFiles();
+      const ports = memoryPorts(faultyFiles(files, { at, how: "killed" }));
+      const work = async () => Book.open("/line", ports).append({ kind: "note", data: { text: "x" } });
+      await work().catch((error: unknown) => expect(error).toBeInstanceOf(Killed));
+      const known = new Set([".gitattributes", "book.jsonl", "book.head", "book.lock"]);
+      const strange = files.list("/line").filter((name) => !known.has(name));
+      const left = leftovers("/line", { files });
+      expect(left.map(({ file }) => file)).toEqual(strange);
+      for (const { what } of left) named.add(what);
+    }
+    expect([...named].sort()).toEqual(["a file that was to replace another", "a lock that was being taken"]);
   });
 
   it("on a real disk keeps permission bits and follows a symbolic link to the file it names", () => {

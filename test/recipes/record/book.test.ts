@@ -65,6 +65,17 @@ describe("the book", () => {
     expect(other.entries.map((entry) => entry.by)).toEqual(["Ana", "Ben", "Ana"]);
   });
 
+  it("is not written when somebody wrote to it without the lock in the meantime", async () => {
+    const { files, book } = await bookOf(2);
+    const rogue = book.write(() => {
+      files.put(BOOK_PATH, files.text(BOOK_PATH) + "rogue");
+      return [runDraft(2)];
+    });
+    await expect(rogue).rejects.toMatchObject({ code: "changed-meanwhile" });
+    expect(files.text(BOOK_PATH).endsWith("rogue")).toBe(true);
+    expect(files.list(FOLDER)).not.toContain("book.lock");
+  });
+
   it("asks for the drafts under the lock, with the entries as they are then", async () => {
     const { files, book } = await bookOf(1);
     const other = Book.open(FOLDER, memoryPorts(files, { pid: 7 }));

@@ -2,6 +2,7 @@
  * Whatever happens to the bytes of a book is noticed and named: every single byte, lines moved, doubled or lost, line
  * ends converted. Truth here is what the test did to the file.
  */
+import { createHash } from "node:crypto";
 import { beforeAll, describe, expect, it } from "vitest";
 import { Book } from "../../../recipes/record/book.ts";
 import type { Damage } from "../../../recipes/record/damage.ts";
@@ -88,6 +89,15 @@ describe("damage", () => {
     expect(damage[0]).toMatchObject({ entry: 3, kind: "broken chain" });
   });
 
+  it("names a line that follows rightly but has a wrong number", () => {
+    const body = lines[2].slice(0, -75).replace('"seq":2', '"seq":7');
+    const hash = createHash("sha256").update(body).digest("hex");
+    expect(found(text([...lines.slice(0, 2), `${body},"hash":"${hash}"}`]))[0]).toMatchObject({
+      entry: 2,
+      kind: "gap",
+    });
+  });
+
   it("names converted line ends once, with how many", () => {
     const damage = found(text(lines).replaceAll("\n", "\r\n"));
     expect(damage).toHaveLength(1);
@@ -151,8 +161,7 @@ describe("damage", () => {
     await expect(book.append(runDraft(3))).rejects.toMatchObject({ code: "damaged-book" });
   });
 
-  it("an entry of a newer format is refused with the version needed, not called damaged", async () => {
-    const { createHash } = await import("node:crypto");
+  it("an entry of a newer format is refused with the version needed, not called damaged", () => {
     const body = lines[ENTRIES - 1].slice(0, -75).replace('"v":1', '"v":2');
     const hash = createHash("sha256").update(body).digest("hex");
     const newer = text([...lines.slice(0, -1), `${body},"hash":"${hash}"}`]);

@@ -173,6 +173,13 @@ describe("corrections", () => {
     expect(bench.ledger.entries[wrong]).toMatchObject({ data: { readings: [{ index: 2.04 }] } });
   });
 
+  it("keep the order of runs of the same minute", () => {
+    const bench = new Bench();
+    for (const silane of [800, 801, 802]) bench.run(silane, {}, 5);
+    bench.add(correctDraft(bench.ledger, { entry: 1, fields: { index: 2.2 }, reason: "r" }));
+    expect(runsOf(chamberRecord(bench.ledger, "A2").timeline).map((run) => run.seq)).toEqual([0, 1, 2]);
+  });
+
   it("add up, the later one wins, and null takes a value away", () => {
     const bench = new Bench();
     const run = bench.run(800);
