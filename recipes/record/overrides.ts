@@ -3,7 +3,7 @@
  * the next clean.
  */
 import type { Entry } from "./entries.ts";
-import { chamberRecord, type Ledger } from "./ledger.ts";
+import type { Ledger } from "./ledger.ts";
 
 export interface Override {
   seq: number;
@@ -32,7 +32,7 @@ export function addOverride(
 export function runsLeft(ledger: Ledger, override: Override, atMs: number): number {
   if (override.atMs > atMs) return 0;
   let left = override.runs;
-  for (const event of chamberRecord(ledger, override.chamber).timeline) {
+  for (const event of ledger.chambers.get(override.chamber)?.timeline ?? []) {
     const since = event.atMs > override.atMs || (event.atMs === override.atMs && event.seq > override.seq);
     if (!since || event.atMs > atMs) continue;
     if (event.kind === "clean") return 0;
