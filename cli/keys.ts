@@ -14,6 +14,7 @@ export type Place =
   | "confirm"
   | "form"
   | "reading"
+  | "sheet"
   | "commands"
   | "filter";
 
@@ -71,7 +72,7 @@ export interface Command {
 }
 
 const screens: readonly Place[] = ["line", "chamber"];
-const scrolled: readonly Place[] = ["line", "chamber", "proposal", "reading", "commands"];
+const scrolled: readonly Place[] = ["line", "chamber", "proposal", "reading", "sheet", "commands"];
 
 export const commands: readonly Command[] = [
   {
@@ -100,7 +101,7 @@ export const commands: readonly Command[] = [
   },
   {
     id: "enter-change",
-    places: ["line", "chamber"],
+    places: ["line", "chamber", "sheet"],
     keys: ["e"],
     label: "entered",
     help: "Say that the adopted settings have been typed in at the tool.",
@@ -202,28 +203,28 @@ export const commands: readonly Command[] = [
   { id: "down", places: scrolled, keys: ["down", "j"], label: "down", help: "One down." },
   {
     id: "first",
-    places: ["line", "chamber", "proposal", "reading"],
+    places: ["line", "chamber", "proposal", "reading", "sheet"],
     keys: ["home", "g"],
     label: "first",
     help: "To the first.",
   },
   {
     id: "last",
-    places: ["line", "chamber", "proposal", "reading"],
+    places: ["line", "chamber", "proposal", "reading", "sheet"],
     keys: ["end", "G"],
     label: "last",
     help: "To the last.",
   },
   {
     id: "page-up",
-    places: ["line", "proposal", "reading"],
+    places: ["line", "proposal", "reading", "sheet"],
     keys: ["pgup", "ctrl-u"],
     label: "page up",
     help: "One page up.",
   },
   {
     id: "page-down",
-    places: ["line", "proposal", "reading"],
+    places: ["line", "proposal", "reading", "sheet"],
     keys: ["pgdn", "ctrl-d", "space"],
     label: "page down",
     help: "One page down.",
@@ -262,7 +263,7 @@ export const commands: readonly Command[] = [
   },
   {
     id: "back",
-    places: ["chamber", "proposal", "reading"],
+    places: ["chamber", "proposal", "reading", "sheet"],
     keys: ["q", "escape"],
     label: "back",
     help: "Back to where you came from.",
@@ -296,21 +297,21 @@ export const commands: readonly Command[] = [
   },
   {
     id: "leave",
-    places: ["proposal", "reading", "value", "reason", "name", "confirm", "form", "commands", "filter"],
+    places: ["proposal", "reading", "sheet", "value", "reason", "name", "confirm", "form", "commands", "filter"],
     keys: ["ctrl-c"],
     label: "leave",
     help: "Leave the program at once.",
   },
   {
     id: "repaint",
-    places: [...screens, "proposal", "reading"],
+    places: [...screens, "proposal", "reading", "sheet"],
     keys: ["ctrl-l"],
     label: "repaint",
     help: "Draw the screen afresh.",
   },
   {
     id: "suspend",
-    places: [...screens, "proposal", "reading"],
+    places: [...screens, "proposal", "reading", "sheet"],
     keys: ["ctrl-z"],
     label: "suspend",
     help: "Stop the program for now; `fg` brings it back.",

@@ -87,6 +87,8 @@ export interface OpenChange {
   reason: string;
   before: ReadonlyMap<string, number>;
   after: ReadonlyMap<string, number>;
+  /** What to type in at the tool, a line each, changed settings marked. */
+  sheet: readonly string[];
   runsSince: number;
 }
 

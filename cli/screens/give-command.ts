@@ -6,7 +6,6 @@ import { openChange } from "./available.ts";
 import { helpLines } from "./help.ts";
 import { nudge, tryDraft } from "./reduce-value.ts";
 import { emptyForm } from "./run-form.ts";
-import { sheetOf } from "./sheet.ts";
 import {
   type ChamberState,
   chamberInHand,
@@ -22,6 +21,11 @@ import {
 import { emptyField } from "./text-field.ts";
 
 const step = (state: State, ...effects: Effect[]): Step => ({ state, effects });
+/** The settings to type in, large enough to be read at the tool. */
+export function sheetLayer(change: string, chamber: string, lines: readonly string[]): Layer {
+  return { kind: "reading", sheet: true, title: `${change}: type in at ${chamber}`, lines, scroll: 0 };
+}
+
 const over = (state: State, layer: Layer): Step => step({ ...state, layers: [...state.layers, layer] });
 
 export function giveCommand(state: State, id: CommandId): Step {
@@ -91,9 +95,7 @@ export function giveCommand(state: State, id: CommandId): Step {
       return adopt(state);
     case "sheet": {
       if (change === null) return step(state);
-      const lines =
-        chamber?.sheet?.change === change.change ? chamber.sheet.lines : sheetOf(change, chamber?.view.settings ?? []);
-      return over(state, { kind: "reading", title: `${change.change}: type in at ${name}`, lines, scroll: 0 });
+      return over(state, sheetLayer(change.change, name, change.sheet));
     }
     case "enter-change":
       if (change === null) return step(state);

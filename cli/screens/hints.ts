@@ -30,6 +30,8 @@ export function hintFor(state: State): string {
       return "type a part of the name, arrows choose, enter gives the command";
     case "reading":
       return "q goes back";
+    case "sheet":
+      return "type these in at the tool and read them back; e when all of it is in, q goes back";
   }
 }
 

@@ -18,7 +18,7 @@ type Of<K extends Layer["kind"]> = Extract<Layer, { kind: K }>;
 
 export function reduceLayer(state: State, input: Input): Step {
   const top = state.layers.at(-1) as Layer;
-  const command = input.kind === "key" ? (commandFor(top.kind, input.name)?.id ?? null) : null;
+  const command = input.kind === "key" ? (commandFor(placeOf(state), input.name)?.id ?? null) : null;
   switch (top.kind) {
     case "proposal":
     case "reading":
@@ -65,6 +65,10 @@ function reduceReading(state: State, top: Of<"proposal"> | Of<"reading">, comman
       ...state,
       layers: [...state.layers, { kind: "reading", title: "keys", lines: helpLines("proposal"), scroll: 0 }],
     });
+  if (command === "enter-change") {
+    const reason = whyNot(state, "enter-change");
+    return reason === null ? giveCommand(drop(state), "enter-change") : still(say(state, "watch", reason));
+  }
   if (command === "adopt") {
     const reason = whyNot(state, "adopt");
     return reason === null ? adopt(state) : still(say(state, "watch", reason));

@@ -5,7 +5,7 @@
 import { commandFor } from "../keys.ts";
 import { adviceInWords } from "./advice-words.ts";
 import { whyNot } from "./available.ts";
-import { giveCommand } from "./give-command.ts";
+import { giveCommand, sheetLayer } from "./give-command.ts";
 import type { Input } from "./keyboard.ts";
 import { reduceLayer } from "./reduce-layer.ts";
 import { reduceValue } from "./reduce-value.ts";
@@ -48,21 +48,9 @@ export function reduce(state: State, event: Event): Step {
       return still(say({ ...known, layers, busy: null }, "plain", text));
     }
     case "adopted": {
-      const sheet = { change: event.change, lines: event.sheet };
-      const chamber =
-        state.chamber !== null && state.chamber.view.chamber === event.chamber
-          ? { ...state.chamber, sheet }
-          : state.chamber;
-      const layers = [
-        {
-          kind: "reading",
-          title: `${event.change}: type in at ${event.chamber}`,
-          lines: event.sheet,
-          scroll: 0,
-        } as const,
-      ];
+      const layers = [sheetLayer(event.change, event.chamber, event.sheet)];
       const text = `${event.change} is open; it counts once it is typed in at the tool: then e`;
-      return still(say({ ...state, chamber, layers, busy: null }, "good", text));
+      return still(say({ ...state, layers, busy: null }, "good", text));
     }
     case "done":
       return still(say({ ...state, busy: null, layers: withoutAsking(state.layers) }, "good", event.text));
@@ -109,7 +97,6 @@ function withChamber(state: State, read: ChamberState["view"], open: boolean): S
     cursor: Math.min(known?.cursor ?? 0, Math.max(0, view.settings.length - 1)),
     typing: known?.typing ?? null,
     picture: known?.picture ?? state.chamber?.picture ?? "plane",
-    sheet: known?.sheet ?? null,
   };
   return { ...state, chamber, chosen: view.chamber, screen: open ? "chamber" : state.screen, filtering: false };
 }

@@ -25,8 +25,6 @@ export interface ChamberState {
   /** A value being typed for it. */
   typing: TextField | null;
   picture: Picture;
-  /** The sheet handed out when the open change was adopted here. */
-  sheet: { change: string; lines: readonly string[] } | null;
 }
 
 /** Something to be done outside: asked for by the reducer, carried out by `perform.ts`. */
@@ -54,7 +52,7 @@ export type Layer =
   | { kind: "name"; question: string; expected: string; field: TextField; onYes: Effect }
   | { kind: "confirm"; question: string; onYes: Effect }
   | { kind: "form"; chamber: string; form: RunForm }
-  | { kind: "reading"; title: string; lines: readonly string[]; scroll: number }
+  | { kind: "reading"; title: string; lines: readonly string[]; scroll: number; sheet?: true }
   | { kind: "commands"; field: TextField; cursor: number };
 
 export type ReasonFor =
@@ -122,7 +120,7 @@ export function startState(columns: number, rows: number): State {
 /** Where the next key goes. */
 export function placeOf(state: State): Place {
   const top = state.layers.at(-1);
-  if (top !== undefined) return top.kind;
+  if (top !== undefined) return top.kind === "reading" && top.sheet ? "sheet" : top.kind;
   if (state.screen === "line") return state.filtering ? "filter" : "line";
   return state.chamber !== null && state.chamber.typing !== null ? "value" : "chamber";
 }

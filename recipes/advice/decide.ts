@@ -54,7 +54,7 @@ export interface Question {
   record: readonly TrackedRun[];
   suspicions: readonly Suspicion[];
   overridden: ReadonlySet<string>;
-  openChange: { change: string; state: "adopted" | "entered"; runsSince: number } | null;
+  openChange: { change: string; state: "adopted" | "entered"; after: Settings; runsSince: number } | null;
   awaitingReadings: number;
   forMode: Mode | null;
   sites: number;
@@ -118,10 +118,12 @@ export function decide(q: Question): Answer {
       q.before,
       certain.flatMap((a) => [a.sentence, `First checks: ${a.checks.join(" ")}`]),
     );
-  if (q.openChange?.state === "adopted")
+  const adopted = q.openChange?.state === "adopted" ? q.openChange : null;
+  if (adopted && [...best.settings].every(([name, value]) => adopted.after.get(name) === value))
     return finish("keep", q.before, [
-      `Change ${q.openChange.change} is adopted but not entered: enter it at the tool (or undo it) before asking for more.`,
+      `Change ${adopted.change} already asks for the best settings known: enter it at the tool (or undo it).`,
     ]);
+  if (adopted) because.push(`Change ${adopted.change} is adopted but not entered: adopting another one supersedes it.`);
   if (q.openChange?.state === "entered" && q.openChange.runsSince === 0)
     return finish("measure", q.before, [
       `Change ${q.openChange.change} was entered and no run has been measured since: run and measure it first.`,

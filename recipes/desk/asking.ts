@@ -115,6 +115,7 @@ export function question(ws: Workspace, name: string, recipe: string, forMode: M
       ? {
           change: open.id,
           state: open.state as "adopted" | "entered",
+          after: canonicalSettings(ws.line, open.after),
           runsSince: runsSince(ws.ledger, open).filter(wasMeasured).length,
         }
       : null,

@@ -1,6 +1,7 @@
 /** The life of a change: adopted from a proposal, approved where the line wants it, entered, closed beside what came out, undone. */
 import { refuse } from "../../engine/index.ts";
 import { measuredInGoal } from "../advice/mode.ts";
+import { fromQuantity, shown } from "../line/settings.ts";
 import { outside } from "../line/window.ts";
 import {
   adoptDraft,
@@ -14,7 +15,7 @@ import {
   undoDraft,
 } from "../record/change-steps.ts";
 import { openChange } from "../record/changes.ts";
-import type { AnyDraft, StepSettings } from "../record/entries.ts";
+import type { AnyDraft, Quantity, StepSettings } from "../record/entries.ts";
 import { changeId } from "../record/ids.ts";
 import type { Ledger } from "../record/ledger.ts";
 import { flatSettings } from "../record/steps.ts";
@@ -39,14 +40,20 @@ export function sheetOf(ws: Workspace, before: readonly StepSettings[], after: r
     const same = old && old.value === q.value && old.unit === q.unit;
     return {
       name,
-      now: `${q.value} ${q.unit}`,
-      note: same ? "as it is" : old ? `was ${old.value} ${old.unit}` : "new",
+      now: typedWords(ws, name, q),
+      note: same ? "as it is" : old ? `was ${typedWords(ws, name, old)}` : "new",
       changed: !same,
     };
   });
   const width = Math.max(...rows.map((r) => r.name.length));
   const widthNow = Math.max(...rows.map((r) => r.now.length));
   return rows.map((r) => `${r.changed ? ">" : " "} ${r.name.padEnd(width)}  ${r.now.padStart(widthNow)}  (${r.note})`);
+}
+
+/** A value as it is typed in: with the decimals of the setting's smallest step. */
+function typedWords(ws: Workspace, name: string, q: Quantity): string {
+  const setting = ws.line.settings.get(name);
+  return setting ? shown(setting, fromQuantity(setting, q)) : `${q.value} ${q.unit}`;
 }
 
 /** Settings in the order the line declares them: the book keeps them sorted by name. */

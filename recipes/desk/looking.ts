@@ -6,11 +6,13 @@ import { chancesAlone, type Expectation, expectation } from "../advice/expectati
 import { asPercent, missWords, runsWord } from "../advice/reasons.ts";
 import { outside } from "../line/window.ts";
 import type { ChamberRow, ChamberView, LineOverview, OpenChange, Outlook, ProposalView, RunSeen } from "../outlook.ts";
-import { runsSince } from "../record/change-steps.ts";
+import { documentSettings, runsSince } from "../record/change-steps.ts";
 import { openChange as openChangeOf } from "../record/changes.ts";
-import { chamberRecord } from "../record/ledger.ts";
+import { proposalId } from "../record/ids.ts";
+import { chamberRecord, type ProposalRecord, proposalOn } from "../record/ledger.ts";
 import { runsOf, wasMeasured } from "../record/timeline.ts";
-import { chamberModel, inForce, type Proposed, question, recentRuns } from "./asking.ts";
+import { chamberModel, inForce, type Proposed, proposalBasis, question, recentRuns } from "./asking.ts";
+import { sheetOf } from "./changing.ts";
 import { canonicalSettings, filmReading, leversOf, lightReadings } from "./learn.ts";
 import { learned } from "./learned.ts";
 import { goalText, lightText } from "./words.ts";
@@ -111,6 +113,7 @@ function openChange(ws: Workspace, chamber: string, recipe: string): OpenChange 
     reason: open.reason,
     before: canonicalSettings(ws.line, open.before),
     after: canonicalSettings(ws.line, open.after),
+    sheet: sheetOf(ws, open.before, open.after),
     runsSince: runsSince(ws.ledger, open).length,
   };
 }
@@ -205,6 +208,7 @@ export function chamberView(ws: Workspace, name: string): ChamberView {
   const before = inForce(ws, name, recipe).settings;
   const now = whatIf(ws, name, before);
   const coverage = coverageOf(trackRecord(model));
+  const kept = proposalOn(ws.ledger, proposalBasis(ws, name, recipe, null));
   return {
     chamber: name,
     recipe,
@@ -214,7 +218,7 @@ export function chamberView(ws: Workspace, name: string): ChamberView {
     surface: ws.line.wafer.surface,
     settings: [...chamber.settings.values()].filter((s) => before.has(s.name)),
     now,
-    proposal: null,
+    proposal: kept ? keptProposal(ws, name, kept) : null,
     runs: runsSeen(ws, name, 20),
     openChange: openChange(ws, name, recipe),
     learned: learned(ws, model, before, coverage),
@@ -223,6 +227,22 @@ export function chamberView(ws: Workspace, name: string): ChamberView {
       .filter((s) => s.probability > 0.3)
       .map((s) => `${s.name}: ${asPercent(s.probability)} since entry ${s.onsetEntry}`),
     plane: plane(ws, goal, now),
+  };
+}
+
+/** A proposal made earlier whose basis still holds, as it was kept in the book. */
+function keptProposal(ws: Workspace, name: string, kept: ProposalRecord): ProposalView {
+  const { document } = kept.data;
+  const list = (key: string) => (Array.isArray(document[key]) ? (document[key] as unknown[]).map(String) : []);
+  return {
+    proposal: proposalId(kept.seq),
+    advice: document["advice"] as ProposalView["advice"],
+    after: whatIf(ws, name, canonicalSettings(ws.line, documentSettings(document, "after"))),
+    because: list("because"),
+    cannotTell: list("cannot_tell"),
+    alarms: list("alarms"),
+    cautions: list("cautions"),
+    done: document["done"] === true,
   };
 }
 

@@ -179,7 +179,7 @@ export async function recordRun(ws: Workspace, run: RunGiven, how: Stamp & { dry
   const { settings, from } = runSettings(ws, chamber, recipe, run.set, atMs);
   const count = wholeNumber("--count", run.count, 1) ?? 1;
   const sinceClean = wholeNumber("--since-clean", run.sinceClean, 0);
-  const sentence = runSentence(ws, chamber, recipe, settings, readings);
+  const sentence = runSentence(ws, chamber, settings, readings);
   const outsideNow = outside(settings, chamber, ws.line).map((f) => f.sentence);
   const written = await write(
     ws,

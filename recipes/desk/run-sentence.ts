@@ -7,13 +7,7 @@ import type { Reading } from "../record/entries.ts";
 import type { Workspace } from "./workspace.ts";
 
 /** Compares the readings with what was expected of these settings before they were known. */
-export function runSentence(
-  ws: Workspace,
-  chamber: Chamber,
-  recipe: string,
-  settings: Settings,
-  readings: readonly Reading[],
-): string {
+export function runSentence(ws: Workspace, chamber: Chamber, settings: Settings, readings: readonly Reading[]): string {
   const film = readings.find((r) => r.on === "polished" && (r.index !== undefined || r.thickness_nm !== undefined));
   if (!film)
     return readings.length > 0
@@ -36,7 +30,7 @@ export function runSentence(
     const text = unit === "nm" ? `${value.toFixed(digits)} nm` : `index ${value.toFixed(digits)}`;
     words.push(`${text}, ${Math.abs(miss).toFixed(digits)} ${miss < 0 ? "below" : "above"} expected`);
   }
-  return `${words.join("; ")}: ${within ? "within noise" : "outside the 95 % interval, a surprise"}. (${recipe})`;
+  return `${words.join("; ")}: ${within ? "within noise" : "outside the 95 % interval, a surprise"}.`;
 }
 
 function expectedOf(ws: Workspace, chamber: Chamber, settings: Settings, film: Reading) {

@@ -292,6 +292,7 @@ export class FakeDesk implements ScreenDesk {
       reason,
       before: chamber.now,
       after,
+      sheet: ["silane   812 -> 835 sccm"],
       runsSince: 0,
     };
     return { change, sheet: [`at ${name}:`, "silane   812 -> 835 sccm", "time     560 -> 572 s"] };

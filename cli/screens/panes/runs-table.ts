@@ -10,7 +10,7 @@ export function runsTableRows(runs: readonly RunSeen[], title: string, paper: Pa
   const { width, height, look } = paper;
   const wide = width >= 72;
   const head =
-    `${right("run", 5)} ${right("since", 5)} ${right("index", 7)} ${right("off", 7)} ${right("nm", 6)} ${right("off", 5)}` +
+    `${right("run", 5)} ${right("since", 5)} ${right("index", 6)} ${right("off", 6)} ${right("nm", 5)} ${right("off", 4)}` +
     (wide ? ` ${right("min nm", 7)} ${right("R %", 6)}  ${left("at", 16)}` : "");
   const rows: Row[] = [[{ ...words(title, look), tone: "strong" }], [{ text: head }]];
   if (runs.length === 0) rows.push([{ text: "no runs yet: l logs one" }]);
@@ -23,9 +23,9 @@ export function runsTableRows(runs: readonly RunSeen[], title: string, paper: Pa
       expected !== null &&
       (Math.abs(offIndex ?? 0) > expected.indexHalf || Math.abs(offNm ?? 0) > expected.thicknessHalf);
     const text =
-      `${right(String(run.entry), 5)} ${right(String(run.sinceClean), 5)} ${right(fixed(run.index, 3), 7)}` +
-      ` ${right(offIndex === null ? "-" : signed(offIndex, 3), 7)} ${right(fixed(run.thicknessNm, 1), 6)}` +
-      ` ${right(offNm === null ? "-" : signed(offNm, 1), 5)}` +
+      `${right(String(run.entry), 5)} ${right(String(run.sinceClean), 5)} ${right(fixed(run.index, 3), 6)}` +
+      ` ${right(offIndex === null ? "-" : signed(offIndex, 3), 6)} ${right(fixed(run.thicknessNm, 1), 5)}` +
+      ` ${right(offNm === null ? "-" : signed(offNm, 1), 4)}` +
       (wide
         ? ` ${right(fixed(run.reflectanceMinimumNm, 0), 7)} ${right(fixed(run.weightedReflectancePercent, 2), 6)}  ${left(run.at.slice(0, 16), 16)}`
         : "");
