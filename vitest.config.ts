@@ -6,5 +6,8 @@ export default defineConfig({
     include: ["test/**/*.test.ts", "test/**/*.test.tsx"],
     exclude: ["test/slow/**"],
     testTimeout: 30_000,
+    // The tests share nothing but pure modules; loading these once a worker instead of once a file halves the time.
+    isolate: false,
+    maxWorkers: 2,
   },
 });
