@@ -1,6 +1,6 @@
 /** The advice on histories where the right answer is known because a virtual chamber made them. */
 import { beforeAll, describe, expect, it } from "vitest";
-import { propose, question } from "../../../recipes/index.ts";
+import { adopt, parseProposalId, propose, question, recordRun } from "../../../recipes/index.ts";
 import { aim } from "../../../recipes/rehearsal/aim.ts";
 import { virtualChamber } from "../../../recipes/rehearsal/virtual-chamber.ts";
 import { expectClose } from "../../support/close.ts";
@@ -178,5 +178,10 @@ describe("the demo's three chambers", () => {
     const again = await propose(ws, { chamber: "A2", forMode: null, dryRun: false });
     expect(again.proposal).toBe(first.proposal);
     expect(again.repeated).toBe(true);
+    await recordRun(ws, { chamber: "A1", index: 2.06, thickness: 88 }, {});
+    const proposal = parseProposalId(first.proposal as string);
+    await expect(adopt(ws, { proposal, reason: "late", entered: false })).rejects.toMatchObject({
+      code: "stale-proposal",
+    });
   });
 });
