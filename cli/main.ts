@@ -104,6 +104,7 @@ async function bare(argv: readonly string[]): Promise<number> {
     process.stdout.isTTY && process.stdin.isTTY && process.env["TERM"] !== "dumb" && !argv.includes("--json");
   if (terminal) {
     const { openOn } = await import("./screens/open-on.ts");
+    process.off("uncaughtException", fault); // the screens have their own, which gives the terminal back first
     return openOn(ws, { env: process.env, noColour: argv.includes("--no-color"), ascii: argv.includes("--ascii") });
   }
   const line = overview(ws);
@@ -133,8 +134,14 @@ async function bare(argv: readonly string[]): Promise<number> {
 
 for (const stream of [process.stdout, process.stderr])
   stream.on("error", (error: NodeJS.ErrnoException) => {
-    if (error.code === "EPIPE") process.exit(0); // the reader has seen enough
-    throw error;
+    process.exit(error.code === "EPIPE" ? 0 : 1); // closed early: the reader has seen enough
   });
+
+/** What nobody caught: said in short, for Node would print the bundle's line, which is half a megabyte long. */
+function fault(error: unknown): void {
+  process.stderr.write(`${errorText(error)}\n`);
+  process.exit(1);
+}
+process.on("uncaughtException", fault);
 
 process.exitCode = await main(process.argv.slice(2));

@@ -1,7 +1,8 @@
 /**
- * Text that came from people or files, made safe to print: control and escape characters, direction overrides and
- * invisible characters are neutralised, so no name or note can move the cursor, change colours or hide a word.
+ * Text that came from people or files, made safe for a screen by the same rule as reports (no name or note can move the
+ * cursor, change colours or hide a word), and its twin in plain ASCII.
  */
+import { safeText as harmless } from "../../recipes/index.ts";
 
 const ascii: Readonly<Record<string, string>> = {
   "±": "+/-",
@@ -35,14 +36,10 @@ const ascii: Readonly<Record<string, string>> = {
   "░": ":",
 };
 
-/** One line of harmless text: tabs and newlines become spaces, other controls a visible `?`, invisible signs vanish. */
+/** One line of harmless text for a screen: tabs and newlines become spaces, what could act on a terminal a visible escape. */
 export function safeText(text: string): string {
   if (/^[\u0020-\u007e]*$/.test(text)) return text;
-  return text
-    .replace(/\r\n|[\t\n\r\u2028\u2029]/g, " ")
-    .replace(/[\u0000-\u001f\u007f-\u009f]/g, "?")
-    .replace(/[\u00ad\u061c\u200b-\u200f\u202a-\u202e\u2060-\u206f\ufeff\ufff9-\ufffb]/g, "")
-    .replace(/[\ud800-\udbff](?![\udc00-\udfff])|(?<![\ud800-\udbff])[\udc00-\udfff]/g, "?");
+  return harmless(text.replace(/\r\n|[\t\n\r\u2028\u2029]/g, " "));
 }
 
 /** The same in plain ASCII: known signs spelled out, accents dropped, anything else `?`. */
