@@ -2,7 +2,7 @@
  * One pass of the filter over one chamber's history at one setting of the hyper-parameters. Keeps, for every measured run,
  * what was predicted before it was read, so that coverage, surprises and evidence can be told afterwards.
  */
-import { type Observation, observe } from "./hypotheses.ts";
+import { observe } from "./hypotheses.ts";
 import type { LightLink } from "./light-link.ts";
 import type { Layout, PreparedLog, PreparedRun } from "./prepare.ts";
 import { scatter } from "./priors.ts";
@@ -74,16 +74,16 @@ export function runEvents(
   options: { from?: number; to?: number; forecasts?: Forecasts; light?: LightLink | null; logBefore?: number } = {},
 ): number {
   const { from = 0, to = log.events.length, forecasts, light = null } = options;
-  const step = stepVariance(node);
   let total = options.logBefore ?? 0;
   const start = total;
+  const context = { node, step: stepVariance(node), process: processVariance(node), forecasts, light };
   for (let at = from; at < to; at++) {
     const event = log.events[at];
     if (event.kind === "clean") resetLast(state, freshStep(node));
     else if (event.kind === "service") newHardware(state, layout);
     else {
       walk(state, node, event.count);
-      if (event.kind === "run") total += readRun(state, layout, event, { node, step, forecasts, light, total });
+      if (event.kind === "run") total += readRun(state, event, context, total);
     }
   }
   return total - start;
@@ -102,37 +102,26 @@ function newHardware(state: State, layout: Layout): void {
   addNoise(state, layout.indexTerms, scatter.service[1]);
 }
 
+/** What stays the same over a pass. */
 interface ReadContext {
   node: Node;
   step: [number, number];
+  process: [number, number];
   forecasts: Forecasts | undefined;
   light: LightLink | null;
-  total: number;
 }
 
-function readRun(state: State, layout: Layout, run: PreparedRun, x: ReadContext): number {
-  const { hIndex, hRate } = run;
-  if (!hIndex || !hRate) return 0;
-  const [pn, pr] = processVariance(x.node);
-  const [gn, gc, gr] = run.gauge;
-  const seesIndex = Number.isFinite(run.yIndex);
-  const seesRate = Number.isFinite(run.yRate);
-  if (x.forecasts) recordForecast(x.forecasts, state, run, [pn, pr], x.total);
-  if (!seesIndex && !seesRate) {
+function readRun(state: State, run: PreparedRun, x: ReadContext, total: number): number {
+  if (x.forecasts) recordForecast(x.forecasts, state, run, x.process, total);
+  if (!run.seen) {
     // Film unread but light read: one number about the film, through the optics.
-    const density = x.light ? readLight(state, layout, run, x.light, [pn, pr]) : 0;
+    const density = x.light ? readLight(state, run, x.light, x.process) : 0;
     x.forecasts?.weights.push([1, 0, 0]);
     return density;
   }
-  const seen: Observation =
-    seesIndex && seesRate
-      ? { rows: [hIndex, hRate], values: [run.yIndex, run.yRate], noise: [gn + pn, gc, gc, gr + pr], outputs: [0, 1] }
-      : seesIndex
-        ? { rows: [hIndex], values: [run.yIndex], noise: [gn + pn], outputs: [0] }
-        : { rows: [hRate], values: [run.yRate], noise: [gr + pr], outputs: [1] };
-  const verdict = observe(state, seen, x.step);
-  x.forecasts?.weights.push(verdict.weights);
-  return verdict.logDensity;
+  const { logDensity, weights } = observe(state, run.seen, x.step, x.process);
+  x.forecasts?.weights.push([weights[0], weights[1], weights[2]]);
+  return logDensity;
 }
 
 function recordForecast(
@@ -142,7 +131,7 @@ function recordForecast(
   process: [number, number],
   total: number,
 ): void {
-  const film = filmAt(state, run.hIndex as Float64Array, run.hRate as Float64Array, process);
+  const film = filmAt(state, run.hIndex, run.hRate, process);
   forecasts.runs.push(run);
   forecasts.index.push(film.index);
   forecasts.lnThickness.push(film.rate + run.known);
@@ -160,7 +149,8 @@ export function filmAt(
   process: readonly [number, number],
 ): { index: number; rate: number; covariance: [number, number, number] } {
   if (work[0].length !== state.n) work = [new Float64Array(state.n), new Float64Array(state.n)];
-  const [f1, f2] = work;
+  const f1 = work[0];
+  const f2 = work[1];
   project(state, hIndex, f1);
   project(state, hRate, f2);
   return {
@@ -171,18 +161,11 @@ export function filmAt(
 }
 
 /** A reflectance minimum alone informs index times thickness: an iterated linearised update, two rounds. */
-function readLight(
-  state: State,
-  _layout: Layout,
-  run: PreparedRun,
-  link: LightLink,
-  process: [number, number],
-): number {
+function readLight(state: State, run: PreparedRun, link: LightLink, process: [number, number]): number {
   let density = 0;
   for (const reading of run.light) {
     if (reading.kind !== "reflectance_minimum_nm") continue; // weighted reflectance is flat and two-valued in thickness
-    const hIndex = run.hIndex as Float64Array;
-    const hRate = run.hRate as Float64Array;
+    const { hIndex, hRate } = run;
     const prior = state.mean.slice();
     let h: Float64Array | null = null;
     let y = 0;

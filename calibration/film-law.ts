@@ -3,7 +3,7 @@
  * hyper-parameter node and hypothesis. Intervals, moments and chances are read from the mixture itself, not from one
  * normal fitted to it: that is where the honest tails come from.
  */
-import { gaussLegendre, mixtureMoments, mixtureQuantile, normalCdf } from "../engine/index.ts";
+import { mixtureMoments, mixtureQuantile } from "../engine/index.ts";
 
 export interface FilmPart {
   weight: number;
@@ -78,90 +78,4 @@ export function filmPoint(law: FilmLaw): { index: number; thicknessNm: number; c
     thicknessNm: d,
     covariance: [m.covariance[0], m.covariance[1] * d, m.covariance[2] * d * d],
   };
-}
-
-/** Where the film must lie. Open sides are infinite. `also`, given, must be <= 0 as well (a limit in reflectance, say). */
-export interface GoalRegion {
-  index: readonly [number, number];
-  thicknessNm: readonly [number, number];
-  also: readonly ((index: number, thicknessNm: number) => number)[];
-}
-
-/**
- * Chance that the film lies in the region: Gauss-Legendre over the index, exact normal differences in ln thickness given
- * the index (methods of conditional integration; tensor Gauss-Hermite is off by several per cent on indicator functions).
- * With `also`, the allowed stretches of thickness are found by sign changes on a grid of `steps` and linear roots.
- */
-export function chanceIn(law: FilmLaw, region: GoalRegion, steps = 24): number {
-  const rule = gaussLegendre(20);
-  let total = 0;
-  for (const part of law.parts) {
-    if (part.weight < 1e-9) continue;
-    total += part.weight * chanceInPart(part, region, rule, steps);
-  }
-  return Math.min(1, Math.max(0, total));
-}
-
-function chanceInPart(
-  part: FilmPart,
-  region: GoalRegion,
-  rule: { nodes: Float64Array; weights: Float64Array },
-  steps: number,
-): number {
-  const [vn, cov, vl] = part.covariance;
-  const sn = Math.sqrt(vn);
-  const low = Math.max(region.index[0], part.index - 6 * sn);
-  const high = Math.min(region.index[1], part.index + 6 * sn);
-  if (!(high > low)) return 0;
-  const slope = cov / vn;
-  const sl = Math.sqrt(Math.max(vl - slope * cov, 1e-18));
-  let sum = 0;
-  for (let i = 0; i < rule.nodes.length; i++) {
-    const index = 0.5 * (low + high) + 0.5 * (high - low) * rule.nodes[i];
-    const u = (index - part.index) / sn;
-    const density = Math.exp(-0.5 * u * u) / (sn * Math.sqrt(2 * Math.PI));
-    const mean = part.lnThickness + slope * (index - part.index);
-    let inside = 0;
-    for (const [a, b] of allowed(index, mean, sl, region, steps)) {
-      inside +=
-        normalCdf((Math.log(b) - mean) / sl) - normalCdf((a > 0 ? Math.log(a) - mean : Number.NEGATIVE_INFINITY) / sl);
-    }
-    sum += rule.weights[i] * density * inside;
-  }
-  return 0.5 * (high - low) * sum;
-}
-
-/** Stretches of thickness inside the region at one index. */
-function allowed(index: number, meanLn: number, sdLn: number, region: GoalRegion, steps: number): [number, number][] {
-  const reachLow = Math.exp(meanLn - 6 * sdLn);
-  const reachHigh = Math.exp(meanLn + 6 * sdLn);
-  const a = Math.max(region.thicknessNm[0], region.also.length > 0 ? reachLow : 0);
-  const b = Math.min(region.thicknessNm[1], region.also.length > 0 ? reachHigh : Number.POSITIVE_INFINITY);
-  if (!(b > a)) return [];
-  if (region.also.length === 0) return [[a, b]];
-  const worst = (d: number) => {
-    let top = Number.NEGATIVE_INFINITY;
-    for (const g of region.also) top = Math.max(top, g(index, d));
-    return top;
-  };
-  const out: [number, number][] = [];
-  let start: number | null = null;
-  let previous = worst(a);
-  if (previous <= 0) start = a;
-  for (let i = 1; i <= steps; i++) {
-    const d = a + ((b - a) * i) / steps;
-    const now = worst(d);
-    if (previous <= 0 !== now <= 0) {
-      const before = d - (b - a) / steps;
-      const root = before + ((d - before) * -previous) / (now - previous);
-      if (now <= 0) start = root;
-      else {
-        out.push([start ?? root, root]);
-        start = null;
-      }
-    }
-    previous = now;
-  }
-  if (start !== null) out.push([start, b]);
-  return out;
 }

@@ -39,8 +39,8 @@ export interface FilmResponse {
   reference: Settings;
   /** The known part of ln(thickness). */
   known(settings: Settings): number;
-  /** Settings that must be present for a run to teach anything. */
-  needed: readonly string[];
+  /** The setting that keeps a run from teaching anything: one not written down, or not above zero where logs are taken; else null. */
+  spoilt(settings: Settings): string | null;
   /** Name of the setting with a built-in meaning, if the line has it. */
   named(meaning: string): string | null;
 }
@@ -92,9 +92,10 @@ export function filmResponse(
     Math.log(aim.thicknessNm ?? 80) - known(reference) + (time === null ? 0 : assumedDeadTimeS / te(reference));
   const indexMean = aim.index ?? indexPriors.offset.mean;
 
-  add("offset", "index", { ...indexPriors.offset, mean: indexMean }, [], () => 1);
-  add("drift", "index", indexPriors.drift, [], (_s, k) => k);
-  add("transient", "index", indexPriors.transient, [], (_s, k) => Math.exp(-k / transientDepositions));
+  // A regressor that serves both outputs is one function, so that `layoutFor` sees that it is the same.
+  add("offset", "index", { ...indexPriors.offset, mean: indexMean }, [], always);
+  add("drift", "index", indexPriors.drift, [], since);
+  add("transient", "index", indexPriors.transient, [], dying);
   const ratioLever = ratioOf(silane, ammonia, reference);
   if (ratioLever && silane && ammonia) {
     add("ratio", "index", indexPriors.ratio, [silane, ammonia], ratioLever);
@@ -102,21 +103,31 @@ export function filmResponse(
   }
   const gas = (name: string, meaning: string) =>
     simpleLever(name, need(reference, name), "log", positive(name, meaning, reference));
-  if (silane) add("silane", "index", indexPriors.silane, [silane], gas(silane, "silane"));
+  const silaneLever = silane ? gas(silane, "silane") : null;
+  if (silane && silaneLever) add("silane", "index", indexPriors.silane, [silane], silaneLever);
   const others = otherLevers(levers, reference);
   for (const o of others) add(o.name, "index", o.index, o.settings, o.value);
 
-  add("offset", "rate", { ...ratePriors.offset, mean: rateMean }, [], () => 1);
-  add("drift", "rate", ratePriors.drift, [], (_s, k) => k);
-  add("transient", "rate", ratePriors.transient, [], (_s, k) => Math.exp(-k / transientDepositions));
+  add("offset", "rate", { ...ratePriors.offset, mean: rateMean }, [], always);
+  add("drift", "rate", ratePriors.drift, [], since);
+  add("transient", "rate", ratePriors.transient, [], dying);
   if (ratioLever && silane && ammonia) add("ratio", "rate", ratePriors.ratio, [silane, ammonia], ratioLever);
-  if (silane) add("silane", "rate", ratePriors.silane, [silane], gas(silane, "silane"));
+  if (silane && silaneLever) add("silane", "rate", ratePriors.silane, [silane], silaneLever);
   if (time !== null) add("dead time", "rate", ratePriors.deadTime, [time], (s) => -1 / te(s));
   for (const o of others) add(o.name, "rate", o.rate, o.settings, o.value);
 
   const needed = [silane, ammonia, time ?? belt].filter((name): name is string => name !== null);
-  return { terms, reference, known, needed, named };
+  const logged = others.filter((o) => o.how === "log").flatMap((o) => o.settings);
+  const spoilt = (settings: Settings): string | null =>
+    needed.find((name) => !((settings.get(name) ?? 0) > 0)) ??
+    logged.find((name) => settings.has(name) && !((settings.get(name) as number) > 0)) ??
+    null;
+  return { terms, reference, known, spoilt, named };
 }
+
+const always: Term["value"] = () => 1;
+const since: Term["value"] = (_settings, k) => k;
+const dying: Term["value"] = (_settings, k) => Math.exp(-k / transientDepositions);
 
 function positive(name: string, meaning: string, reference: Settings): number {
   const value = need(reference, name);
@@ -135,6 +146,7 @@ function ratioOf(silane: string | null, ammonia: string | null, reference: Setti
 
 interface OtherLever {
   name: string;
+  how: "log" | "linear";
   settings: string[];
   index: Prior;
   rate: Prior;
@@ -161,19 +173,27 @@ function otherLevers(levers: readonly Lever[], reference: Settings): OtherLever[
     if (meaning === "nitrogen") {
       const scale = Math.max(at, 0.25 * lever.high, 1e-9);
       const value = simpleLever(setting, at, "linear", scale);
-      found.push({ name: setting, settings: [setting], index: indexPriors.nitrogen, rate: ratePriors.nitrogen, value });
+      const { nitrogen } = indexPriors;
+      found.push({
+        name: setting,
+        how: "linear",
+        settings: [setting],
+        index: nitrogen,
+        rate: ratePriors.nitrogen,
+        value,
+      });
       continue;
     }
     const row = meaning === null ? undefined : otherMeanings[meaning.startsWith("zone_") ? "temperature" : meaning];
     if (row && (row.how === "linear" || at > 0)) {
       const value = simpleLever(setting, at, row.how, 1);
-      found.push({ name: setting, settings: [setting], index: row.index, rate: row.rate, value });
+      found.push({ name: setting, how: row.how, settings: [setting], index: row.index, rate: row.rate, value });
       continue;
     }
     const how = lever.acts === "log" && at > 0 ? "log" : "linear";
     const index = how === "log" ? indexPriors.ownLog : indexPriors.ownLinear;
     const rate = how === "log" ? ratePriors.ownLog : ratePriors.ownLinear;
-    found.push({ name: setting, settings: [setting], index, rate, value: simpleLever(setting, at, how, span) });
+    found.push({ name: setting, how, settings: [setting], index, rate, value: simpleLever(setting, at, how, span) });
   }
   return found;
 }

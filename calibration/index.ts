@@ -3,16 +3,15 @@
  * suspicions, predictions with covariance). Re-exports only.
  */
 export { ChamberModel, type Coefficient } from "./chamber-model.ts";
+export { type Cut, chanceIn, type GoalRegion } from "./chance.ts";
 export { type FacetFactor, facetFactor } from "./facet.ts";
 export { type Suspicion, suspicions } from "./faults.ts";
 export {
   type Bounds,
-  chanceIn,
   type FilmLaw,
   type FilmPart,
   filmMoments,
   filmPoint,
-  type GoalRegion,
   indexBounds,
   thicknessBounds,
 } from "./film-law.ts";

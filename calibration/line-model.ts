@@ -36,16 +36,31 @@ interface Hopeful {
   logBefore: number;
   logWeight: number;
   forecasts: Forecasts | null;
+  /** Events run so far. */
+  done: number;
 }
 
 /** Events between two looks at the race, and how many nats behind is hopeless: e^-16 is 1e-7 of the weight. */
-const stretch = 16;
+const stretch = 8;
 const hopeless = 16;
 
 interface GenericPass {
   generic: Law;
   posterior: Law;
   logDensity: number;
+}
+
+/** A node's way through a sister's log; its pass is made when first wanted. */
+interface Lane {
+  hopeful: Hopeful;
+  inRace: boolean;
+  pass: GenericPass | null;
+}
+
+interface GenericRace {
+  generic: Law;
+  /** One a node. */
+  lanes: Lane[];
 }
 
 /** The fleet's law before any data, at a node. */
@@ -69,7 +84,7 @@ export class LineModel {
   readonly light: LightLink | null;
   private readonly prepared: Map<string, PreparedLog>;
   private readonly nodes = hyperNodes();
-  private readonly generic = new Map<string, (GenericPass | null)[]>();
+  private readonly generic = new Map<string, GenericRace>();
   private readonly models = new Map<string, ChamberModel>();
 
   constructor(
@@ -92,12 +107,14 @@ export class LineModel {
     if (!log) refuse("unknown-chamber", `no chamber ${name}`, { hint: [...this.prepared.keys()].join(", ") });
     const sisters = [...this.prepared.values()].filter((other) => other !== log && readings(other) > 0);
     const hopefuls: Hopeful[] = [];
+    const prior = fleetPrior(this.layout);
+    const said = this.saidBySisters(sisters);
     this.nodes.forEach(({ node, logPrior }, i) => {
-      let fleet = fleetPrior(this.layout);
+      let fleet = prior;
       let logWeight = logPrior;
       const spread = spreadOf(this.layout, node);
-      for (const sister of sisters) {
-        const generic = this.genericPass(sister)[i];
+      for (const passes of said) {
+        const generic = passes[i];
         if (!generic) return;
         const heard = hearSister(fleet, spread, generic);
         fleet = heard.fleet;
@@ -111,6 +128,7 @@ export class LineModel {
         logBefore: logWeight,
         logWeight,
         forecasts: emptyForecasts(),
+        done: 0,
       });
     });
     const passes = this.race(log, hopefuls).map(
@@ -125,31 +143,58 @@ export class LineModel {
   }
 
   /**
-   * What a chamber's own data say, per node; shared by all its sisters. Null where the node lost the race. The chamber
-   * spread matters only through the prior, which `hearSister` swaps, so one pass serves all its values.
+   * What each sister says, per node; null where the node is out. Sisters race apart, and a node that is hopeless for one may
+   * lead for another: where none is left for all of them, those that any sister kept are run to the end for the others too.
    */
-  private genericPass(log: PreparedLog): (GenericPass | null)[] {
-    let passes = this.generic.get(log.chamber);
-    if (!passes) {
+  private saidBySisters(sisters: readonly PreparedLog[]): (GenericPass | null)[][] {
+    const races = sisters.map((sister) => this.genericRace(sister));
+    const keptBy = (every: boolean) =>
+      this.nodes.map((_, i) =>
+        every ? races.every(({ lanes }) => lanes[i].inRace) : races.some(({ lanes }) => lanes[i].inRace),
+      );
+    const common = keptBy(true);
+    const wanted = common.some((kept) => kept) ? common : keptBy(false);
+    return races.map(({ generic, lanes }, s) =>
+      lanes.map((lane, i) => {
+        if (!wanted[i]) return null;
+        if (!lane.pass) {
+          const h = lane.hopeful;
+          this.advance(sisters[s], h, sisters[s].events.length);
+          lane.pass = { generic, posterior: coefficientLaw(h.state), logDensity: h.logWeight - h.logBefore };
+        }
+        return lane.pass;
+      }),
+    );
+  }
+
+  /**
+   * A chamber's own data run at every node under the law of some chamber of this line; shared by all its sisters. The chamber
+   * spread matters only through the prior, which `hearSister` swaps, so one lane serves all its values.
+   */
+  private genericRace(log: PreparedLog): GenericRace {
+    let known = this.generic.get(log.chamber);
+    if (!known) {
       const widest = Math.max(...this.nodes.map(({ node }) => node.spread));
-      const hopefuls = this.nodes.flatMap(({ node, logPrior }): (Hopeful & { generic: Law })[] => {
+      const [wide] = this.nodes.filter(({ node }) => node.spread === widest);
+      const generic = drawChamber(fleetPrior(this.layout), spreadOf(this.layout, wide.node));
+      const hopefuls = this.nodes.flatMap(({ node, logPrior }): Hopeful[] => {
         if (node.spread !== widest) return [];
-        const generic = drawChamber(fleetPrior(this.layout), spreadOf(this.layout, node));
         const start = startState(stateOf(generic), node);
-        return [
-          { node, start, state: copyState(start), logBefore: logPrior, logWeight: logPrior, forecasts: null, generic },
-        ];
+        const state = copyState(start);
+        return [{ node, start, state, logBefore: logPrior, logWeight: logPrior, forecasts: null, done: 0 }];
       });
-      const left = new Set<Hopeful>(this.race(log, hopefuls));
-      passes = this.nodes.map(({ node }) => {
-        const h = hopefuls.find((one) => one.node.process === node.process && one.node.step === node.step);
-        return h && left.has(h)
-          ? { generic: h.generic, posterior: coefficientLaw(h.state), logDensity: h.logWeight - h.logBefore }
-          : null;
-      });
-      this.generic.set(log.chamber, passes);
+      const left = new Set(this.race(log, hopefuls));
+      const lanes = hopefuls.map((hopeful): Lane => ({ hopeful, inRace: left.has(hopeful), pass: null }));
+      known = {
+        generic,
+        lanes: this.nodes.map(({ node }) => {
+          const same = lanes.find(({ hopeful: { node: n } }) => n.process === node.process && n.step === node.step);
+          return same ?? refuse("no-node", "a node without a lane");
+        }),
+      };
+      this.generic.set(log.chamber, known);
     }
-    return passes;
+    return known;
   }
 
   /** Runs the log at every node, in stretches, dropping nodes that have fallen hopelessly behind. Returns those left. */
@@ -157,20 +202,23 @@ export class LineModel {
     let left = [...hopefuls];
     for (let from = 0; from < log.events.length; from += stretch) {
       const to = Math.min(from + stretch, log.events.length);
-      for (const h of left) {
-        const options = {
-          from,
-          to,
-          forecasts: h.forecasts ?? undefined,
-          light: this.light,
-          logBefore: h.logWeight - h.logBefore,
-        };
-        h.logWeight += runEvents(h.state, this.layout, log, h.node, options);
-      }
+      for (const h of left) this.advance(log, h, to);
       const best = Math.max(...left.map((h) => h.logWeight));
       left = left.filter((h) => h.logWeight > best - hopeless);
     }
     return left;
+  }
+
+  private advance(log: PreparedLog, h: Hopeful, to: number): void {
+    const options = {
+      from: h.done,
+      to,
+      forecasts: h.forecasts ?? undefined,
+      light: this.light,
+      logBefore: h.logWeight - h.logBefore,
+    };
+    h.logWeight += runEvents(h.state, this.layout, log, h.node, options);
+    h.done = to;
   }
 }
 

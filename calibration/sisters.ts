@@ -31,6 +31,18 @@ export function invertSpd(a: Float64Array, n: number): Inverse {
   return { inverse: choleskyInverse(factor, n), logDet: choleskyLogDeterminant(factor, n) };
 }
 
+const inverses = new WeakMap<Law, Inverse>();
+
+/** The inverse of a law's covariance, kept with it: the same laws come up at every value of the chamber spread. */
+function inverseOf(law: Law): Inverse {
+  let known = inverses.get(law);
+  if (!known) {
+    known = invertSpd(law.covariance, law.p);
+    inverses.set(law, known);
+  }
+  return known;
+}
+
 /** The coefficients' part of a filter state (all but the two steps). */
 export function coefficientLaw(state: State): Law {
   const n = state.n;
@@ -61,8 +73,8 @@ interface Said {
 
 function saidBy(prior: Law, posterior: Law): Said & { generic: Inverse; posterior: Inverse } {
   const p = prior.p;
-  const generic = invertSpd(prior.covariance, p);
-  const own = invertSpd(posterior.covariance, p);
+  const generic = inverseOf(prior);
+  const own = inverseOf(posterior);
   const before = generic.inverse;
   const after = own.inverse;
   const information = new Float64Array(p * p);
@@ -92,7 +104,7 @@ export function hearSister(
   for (let i = 0; i < p; i++) inner[i * p + i] += 1 / spread[i];
   symmetrise(inner, p);
   const c = invertSpd(inner, p).inverse;
-  const now = invertSpd(fleet.covariance, p).inverse;
+  const now = inverseOf(fleet).inverse.slice();
   const vector = new Float64Array(p);
   for (let i = 0; i < p; i++) {
     let sum = 0;

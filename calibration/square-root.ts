@@ -46,18 +46,20 @@ export function dot(a: Float64Array, b: Float64Array): number {
   return sum;
 }
 
-const scratch = { f: new Float64Array(64), gain: new Float64Array(64) };
+const scratch = { f: new Float64Array(0), gain: new Float64Array(0), second: new Float64Array(0) };
 
 /** Update with one scalar y = h'z + noise of variance r. Returns the log density of the innovation. */
 export function updateScalar(state: State, h: Float64Array, y: number, r: number): number {
+  if (scratch.f.length !== state.n) scratch.f = new Float64Array(state.n);
+  project(state, h, scratch.f);
+  return updateProjected(state, scratch.f, y - dot(h, state.mean), r);
+}
+
+/** The same where f = L'h and the innovation y - h'z are known already. */
+export function updateProjected(state: State, f: Float64Array, innovation: number, r: number): number {
   const { n, mean, factor } = state;
-  if (scratch.f.length !== n) {
-    scratch.f = new Float64Array(n);
-    scratch.gain = new Float64Array(n);
-  }
-  const { f, gain } = scratch;
-  project(state, h, f);
-  const innovation = y - dot(h, mean);
+  if (scratch.gain.length !== n) scratch.gain = new Float64Array(n);
+  const { gain } = scratch;
   const alpha = r + dot(f, f);
   gain.fill(0);
   // Backwards: after is r + sum over i > j of f_i^2, before adds f_j^2; gain accumulates sum over k > j of f_k L[:,k].
@@ -81,11 +83,61 @@ export function updateScalar(state: State, h: Float64Array, y: number, r: number
   return -0.5 * (Math.log(2 * Math.PI * alpha) + innovation * step);
 }
 
+/**
+ * Two updates in one sweep over the factor: outputs of independent noise r0 and r1, c0 = L'h0 and c1 = L'h1,
+ * innovations e before either. The first update's factor is L M with M known in closed form, so the second's column is
+ * M'c1 = d c1 - o (sum over k > j of c0 c1), without the rows being projected again.
+ */
+export function updatePair(
+  state: State,
+  c0: Float64Array,
+  c1: Float64Array,
+  e: Float64Array,
+  r0: number,
+  r1: number,
+): void {
+  const { n, mean, factor } = state;
+  if (scratch.gain.length !== n) scratch.gain = new Float64Array(n);
+  if (scratch.second.length !== n) scratch.second = new Float64Array(n);
+  const { gain: gain0, second: gain1 } = scratch;
+  gain0.fill(0);
+  gain1.fill(0);
+  let after0 = r0;
+  let after1 = r1;
+  let crossed = 0;
+  for (let j = n - 1; j >= 0; j--) {
+    const f0 = c0[j];
+    const before0 = after0 + f0 * f0;
+    const d0 = Math.sqrt(after0 / before0);
+    const o0 = f0 / Math.sqrt(after0 * before0);
+    const f1 = d0 * c1[j] - o0 * crossed;
+    crossed += f0 * c1[j];
+    const before1 = after1 + f1 * f1;
+    const d1 = Math.sqrt(after1 / before1);
+    const o1 = f1 / Math.sqrt(after1 * before1);
+    for (let i = j, at = j * n + j; i < n; i++, at += n) {
+      const l = factor[at];
+      const g0 = gain0[i];
+      const g1 = gain1[i];
+      const between = l * d0 - g0 * o0;
+      gain0[i] = g0 + f0 * l;
+      factor[at] = between * d1 - g1 * o1;
+      gain1[i] = g1 + f1 * between;
+    }
+    after0 = before0;
+    after1 = before1;
+  }
+  const step0 = e[0] / after0;
+  const step1 = (e[1] - crossed * step0) / after1;
+  for (let i = 0; i < n; i++) mean[i] += gain0[i] * step0 + gain1[i] * step1;
+}
+
 /** Adds independent noise of standard deviation sd to state i, which must be among the last rows for this to be cheap. */
 export function addNoise(state: State, i: number, sd: number): void {
   const { n, factor } = state;
   if (i === n - 1) {
-    factor[n * n - 1] = Math.hypot(factor[n * n - 1], sd);
+    const l = factor[n * n - 1];
+    factor[n * n - 1] = Math.sqrt(l * l + sd * sd);
     return;
   }
   if (i === n - 2) {
@@ -93,10 +145,13 @@ export function addNoise(state: State, i: number, sd: number): void {
     const at = n * n - n - 2;
     const l = factor[at];
     const below = factor[n * n - 2];
-    const r = Math.hypot(l, sd);
+    // Square roots, not Math.hypot: these are standard deviations far from overflow, and it is several times slower.
+    const r = Math.sqrt(l * l + sd * sd);
+    const turned = (sd * below) / r;
+    const corner = factor[n * n - 1];
     factor[at] = r;
     factor[n * n - 2] = (l * below) / r;
-    factor[n * n - 1] = Math.hypot(factor[n * n - 1], (sd * below) / r);
+    factor[n * n - 1] = Math.sqrt(corner * corner + turned * turned);
     return;
   }
   // Rank-one update of the factor by v = sd e_i; v has entries from row i on only.

@@ -12,6 +12,8 @@ export type Place =
   | "reason"
   | "name"
   | "confirm"
+  | "entering"
+  | "read-back"
   | "form"
   | "reading"
   | "sheet"
@@ -42,6 +44,7 @@ export type CommandId =
   | "step-back"
   | "reset"
   | "view"
+  | "learned"
   | "next-chamber"
   | "previous-chamber"
   | "propose"
@@ -55,6 +58,7 @@ export type CommandId =
   | "accept"
   | "yes"
   | "no"
+  | "differs"
   | "next-field"
   | "previous-field";
 
@@ -129,6 +133,7 @@ export const commands: readonly Command[] = [
     keys: ["u"],
     label: "undo",
     help: "Take the open change back: a new change to the settings from before, with a reason.",
+    footer: 7,
   },
   {
     id: "clean",
@@ -143,6 +148,7 @@ export const commands: readonly Command[] = [
     keys: ["s"],
     label: "sheet",
     help: "Show the settings to type in for the open change.",
+    footer: 4,
   },
   {
     id: "view",
@@ -151,6 +157,13 @@ export const commands: readonly Command[] = [
     label: "view",
     help: "Next picture: film plane, reflectance, runs, what the model learned.",
     footer: 7,
+  },
+  {
+    id: "learned",
+    places: ["chamber"],
+    keys: ["i"],
+    label: "learned",
+    help: "Read all that the model learned, what it cannot tell, and its alarms.",
   },
   {
     id: "less",
@@ -231,7 +244,7 @@ export const commands: readonly Command[] = [
   },
   {
     id: "accept",
-    places: ["value", "reason", "name", "form", "commands", "filter"],
+    places: ["value", "reason", "name", "form", "read-back", "commands", "filter"],
     keys: ["enter"],
     label: "accept",
     help: "Take what is typed.",
@@ -239,23 +252,31 @@ export const commands: readonly Command[] = [
   },
   {
     id: "next-field",
-    places: ["form"],
+    places: ["form", "read-back"],
     keys: ["tab", "down"],
-    label: "next field",
-    help: "To the next field.",
+    label: "next",
+    help: "To the next one.",
     footer: 2,
   },
   {
     id: "previous-field",
-    places: ["form"],
+    places: ["form", "read-back"],
     keys: ["shift-tab", "up"],
-    label: "field before",
-    help: "To the field before.",
+    label: "before",
+    help: "To the one before.",
   },
-  { id: "yes", places: ["confirm"], keys: ["y"], label: "yes", help: "Yes, do it.", footer: 1 },
+  { id: "yes", places: ["confirm", "entering"], keys: ["y"], label: "yes", help: "Yes, do it.", footer: 1 },
+  {
+    id: "differs",
+    places: ["entering"],
+    keys: ["d"],
+    label: "one differs",
+    help: "One value reads back differently: say which, and what it reads.",
+    footer: 2,
+  },
   {
     id: "no",
-    places: ["confirm"],
+    places: ["confirm", "entering"],
     keys: ["n", "escape", "q"],
     label: "no",
     help: "No, leave everything as it is.",
@@ -271,7 +292,7 @@ export const commands: readonly Command[] = [
   },
   {
     id: "back",
-    places: ["value", "reason", "name", "form", "commands", "filter"],
+    places: ["value", "reason", "name", "form", "read-back", "commands", "filter"],
     keys: ["escape"],
     label: "give up",
     help: "Give up what is being typed.",
@@ -297,7 +318,20 @@ export const commands: readonly Command[] = [
   },
   {
     id: "leave",
-    places: ["proposal", "reading", "sheet", "value", "reason", "name", "confirm", "form", "commands", "filter"],
+    places: [
+      "proposal",
+      "reading",
+      "sheet",
+      "value",
+      "reason",
+      "name",
+      "confirm",
+      "entering",
+      "read-back",
+      "form",
+      "commands",
+      "filter",
+    ],
     keys: ["ctrl-c"],
     label: "leave",
     help: "Leave the program at once.",

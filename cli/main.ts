@@ -2,6 +2,7 @@
  * The program: builds the real ports, finds the verb, performs it, prints. No verb opens the screens, or prints the
  * overview where there is no terminal.
  */
+import "./tiering.ts";
 import { mkdtempSync, readFileSync, rmSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join, resolve } from "node:path";

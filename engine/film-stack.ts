@@ -105,7 +105,7 @@ function minimumOf(description: FilmStackDescription, grid: Float64Array): numbe
   const curve = (wavelengthNm: number): number => bare(Float64Array.of(wavelengthNm))[0];
   if (description.film.length > 1) return lowestMinimum(grid, bare(grid), curve);
   const [{ material, thicknessNm }] = description.film;
-  return mainMinimum(grid, bare(grid), (wavelengthNm) => material.at(wavelengthNm).n * thicknessNm, curve);
+  return mainMinimum(grid, bare(grid), (i) => material.at(grid[i]).n * thicknessNm, curve);
 }
 
 function colourOf(description: FilmStackDescription): FilmStackAnswer["colour"] {

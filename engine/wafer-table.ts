@@ -52,21 +52,73 @@ export function waferTable(exact: WaferTable): WaferTable {
   };
 }
 
+/** No value here: minima outside the light range. All values are finite otherwise; NaN stands for "not asked yet". */
+const none = Number.POSITIVE_INFINITY;
+
+/**
+ * Values at the nodes in columns, one a node of index, along thickness. The cut through them at the index asked last is kept:
+ * chances are integrated along thickness, many questions to one index.
+ */
 function interpolated(exact: Property, thicknessStepNm: number): Property {
   const pieces = pieceNodes();
-  const known = new Map<number, number | null>();
+  const columns = pieces.map((nodes) => Array.from(nodes, () => new Float64Array(0)));
   const weightOfIndex = new Float64Array(4);
   const weightOfThickness = new Float64Array(4);
+  let indexNow = Number.NaN;
+  let pieceNow = 0;
+  let firstIndex = 0;
+  /** The cut at `indexNow`; NaN where it has not been made yet. */
+  let cut = new Float64Array(64).fill(Number.NaN);
+  let cutFrom = 0;
+  let cutTo = 0;
 
-  function node(piece: number, i: number, j: number): number | null {
-    // One whole number a node: 4 pieces, under 64 index nodes each.
-    const key = (j * 64 + i) * 4 + piece;
-    let value = known.get(key);
-    if (value === undefined) {
-      value = exact(pieces[piece][i], j * thicknessStepNm);
-      known.set(key, value);
+  function node(i: number, j: number): number {
+    let column = columns[pieceNow][i];
+    if (j >= column.length) {
+      const longer = new Float64Array(Math.max(64, 2 * j)).fill(Number.NaN);
+      longer.set(column);
+      columns[pieceNow][i] = longer;
+      column = longer;
     }
+    const known = column[j];
+    if (!Number.isNaN(known)) return known;
+    const value = exact(pieces[pieceNow][i], j * thicknessStepNm) ?? none;
+    column[j] = value;
     return value;
+  }
+
+  function cutAt(index: number): void {
+    indexNow = index;
+    pieceNow = 0;
+    while (pieceNow < pieces.length - 1 && index > pieces[pieceNow + 1][0]) pieceNow++;
+    const nodes = pieces[pieceNow];
+    const step = nodes[1] - nodes[0];
+    firstIndex = clamp(Math.floor((index - nodes[0]) / step) - 1, 0, nodes.length - 4);
+    cubicWeights((index - nodes[firstIndex]) / step, weightOfIndex);
+    cut.fill(Number.NaN, cutFrom, cutTo);
+    cutFrom = cut.length;
+    cutTo = 0;
+  }
+
+  /** Value on the cut at node j of thickness; `none` where one of its four nodes has none. */
+  function along(j: number): number {
+    if (j >= cut.length) {
+      const longer = new Float64Array(2 * j).fill(Number.NaN);
+      longer.set(cut);
+      cut = longer;
+    }
+    const known = cut[j];
+    if (!Number.isNaN(known)) return known;
+    let sum = 0;
+    for (let i = 0; i < 4; i++) {
+      const value = node(firstIndex + i, j);
+      sum = value === none ? none : sum + weightOfIndex[i] * value;
+      if (sum === none) break;
+    }
+    cut[j] = sum;
+    if (j < cutFrom) cutFrom = j;
+    if (j >= cutTo) cutTo = j + 1;
+    return sum;
   }
 
   return (index, thicknessNm) => {
@@ -74,21 +126,14 @@ function interpolated(exact: Property, thicknessStepNm: number): Property {
     finite(thicknessNm, "thickness");
     if (index < nitrideIndexRange[0] || index > nitrideIndexRange[1] || thicknessNm < 0)
       return exact(index, thicknessNm);
-    let piece = 0;
-    while (piece < pieces.length - 1 && index > pieces[piece + 1][0]) piece++;
-    const nodes = pieces[piece];
-    const step = nodes[1] - nodes[0];
-    const firstIndex = clamp(Math.floor((index - nodes[0]) / step) - 1, 0, nodes.length - 4);
+    if (index !== indexNow) cutAt(index);
     const firstThickness = Math.max(0, Math.floor(thicknessNm / thicknessStepNm) - 1);
-    cubicWeights((index - nodes[firstIndex]) / step, weightOfIndex);
     cubicWeights(thicknessNm / thicknessStepNm - firstThickness, weightOfThickness);
     let sum = 0;
-    for (let i = 0; i < 4; i++) {
-      for (let j = 0; j < 4; j++) {
-        const value = node(piece, firstIndex + i, firstThickness + j);
-        if (value === null) return exact(index, thicknessNm);
-        sum += weightOfIndex[i] * weightOfThickness[j] * value;
-      }
+    for (let j = 0; j < 4; j++) {
+      const value = along(firstThickness + j);
+      if (value === none) return exact(index, thicknessNm);
+      sum += weightOfThickness[j] * value;
     }
     return sum;
   };

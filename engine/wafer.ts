@@ -12,12 +12,12 @@ import { type SeenColour, seenColour } from "./colour/lab.ts";
 import { colourWavelengthNm } from "./colour/observer.ts";
 import { materialByName } from "./materials/library.ts";
 import { type NitrideMaterial, siliconNitride } from "./materials/nitride-family.ts";
-import { mainMinimum } from "./optics/reflectance-minimum.ts";
+import { mainMinimum, mainStretch } from "./optics/reflectance-minimum.ts";
 import { type GridWeights, gridWeights, type SunlightWeight, weightedSum } from "./sunlight/weighting.ts";
-import { type BareSurface, bareSurface, FilmedSurface, withoutCover } from "./surface/filmed-surface.ts";
+import { type BareSurface, bareSurface, FilmedSpot, FilmedSurface, withoutCover } from "./surface/filmed-surface.ts";
 import { pathSum } from "./surface/path-sum.ts";
 import { type Arrangement, pyramidPaths } from "./surface/pyramids.ts";
-import type { SeenFrom } from "./surface/seen-from.ts";
+import { type SeenFrom, surroundings } from "./surface/seen-from.ts";
 import { type WaferTable, waferTable } from "./wafer-table.ts";
 import { wavelengthGrid } from "./wavelength-grid.ts";
 
@@ -105,6 +105,10 @@ export function coatedWafer(description: WaferDescription): CoatedWafer {
   for (const wavelengthNm of [fromNm, toNm]) siliconNitride(2).at(wavelengthNm);
   const bare = on(wavelengthGrid(fromNm, toNm, stepNm));
   const scanBare = withoutCover(stepNm <= scanStepNm ? bare : on(wavelengthGrid(fromNm, toNm, scanStepNm)));
+  const incidenceIndexAt = (wavelengthNm: number): number =>
+    seenFrom === "glass" ? surroundings(seenFrom, Float64Array.of(wavelengthNm)).incidenceIndex[0] : outside;
+  const outside = seenFrom === "glass" ? Number.NaN : bare.around.incidenceIndex[0];
+  const spot = new FilmedSpot(paths, silicon, incidenceIndexAt);
   let colourBare: BareSurface | null = null;
   const weights: GridWeights = gridWeights(bare.wavelengthNm, fromNm, toNm, weight);
   const films = new Map<number, ReadyFilm>();
@@ -136,23 +140,24 @@ export function coatedWafer(description: WaferDescription): CoatedWafer {
         absorptance: absorptance.slice(),
       };
     },
-    weightedReflectancePercent: (index, thicknessNm) =>
-      100 * weightedSum(weights.average, evaluated(index, thicknessNm).reflectance),
+    weightedReflectancePercent(index, thicknessNm) {
+      const { surface: filmed } = filmOf(index);
+      filmed.reflect(thicknessNm);
+      return 100 * weightedSum(weights.average, filmed.reflectance);
+    },
     reflectanceMinimumNm(index, thicknessNm) {
       const film = filmOf(index);
       film.scan ??= scanBare === bare ? film.surface : new FilmedSurface(scanBare, film.material);
-      film.scan.evaluate(thicknessNm);
-      const point = new Float64Array(1);
+      const { scan, material } = film;
+      const opticalNm = (i: number) => scan.filmIndex[i] * thicknessNm;
+      const [first, last] = mainStretch(scanBare.wavelengthNm, opticalNm);
+      scan.reflect(thicknessNm, first, last + 1);
       return mainMinimum(
         scanBare.wavelengthNm,
-        film.scan.reflectance,
-        (wavelengthNm) => film.material.at(wavelengthNm).n * thicknessNm,
-        (wavelengthNm) => {
-          point[0] = wavelengthNm;
-          const here = new FilmedSurface(withoutCover(on(point)), film.material);
-          here.evaluate(thicknessNm);
-          return here.reflectance[0];
-        },
+        scan.reflectance,
+        opticalNm,
+        (wavelengthNm) => spot.reflectance(material, thicknessNm, wavelengthNm),
+        [first, last],
       );
     },
     currents(index, thicknessNm) {
@@ -168,7 +173,7 @@ export function coatedWafer(description: WaferDescription): CoatedWafer {
       const film = filmOf(index);
       colourBare ??= on(colourWavelengthNm);
       film.colour ??= new FilmedSurface(colourBare, film.material);
-      film.colour.evaluate(thicknessNm);
+      film.colour.reflect(thicknessNm);
       return seenColour(film.colour.reflectance);
     },
     table() {

@@ -96,12 +96,18 @@ export interface OpenChange {
 export interface ChamberRow {
   chamber: string;
   recipe: string;
+  /** The goal of that recipe, which the row is judged by. */
+  goal: Goal;
   /** Rank of urgency: fault first. */
   attention: "fault" | "propose" | "measure" | "enter" | "close" | "keep" | "no data";
-  /** In words: "4 runs since clean, thickness 2.9 nm low, 31 % in goal: propose". */
+  /** Name of the alarm that stops proposals, null without one. */
+  alarm: string | null;
+  /** In words, of the film expected next: "4 runs since clean, expected 2.3 nm thin, 31 % in goal: ask for a proposal". */
   sentence: string;
   chanceInGoal: number | null;
+  /** Since the last clean logged, or where none was, since the first run. */
   depositionsSinceClean: number;
+  cleaned: boolean;
   runs: number;
   lastRuns: readonly RunSeen[];
   awaitingReadings: number;

@@ -48,7 +48,7 @@ export function planeRows(plot: PlanePlot): Row[] {
   drawGoal(canvas, plot, columns, rows);
   drawFilms(canvas, plot, columns, rows);
   drawAxes(canvas, plot, columns, rows);
-  canvas.put(0, height - 1, legend(shades, look).slice(0, width), "plain");
+  canvas.put(0, height - 1, legend(shades, look, width), "plain");
   return canvas.rows();
 }
 
@@ -73,14 +73,23 @@ function drawShades(canvas: Canvas, plot: PlanePlot, shades: Shading | null, col
   }
 }
 
-function legend(shades: Shading | null, look: Look): string {
-  if (shades === null) return "weighted reflectance not known";
+/** What each shade means, in the words that fit. */
+function legend(shades: Shading | null, look: Look, width: number): string {
+  if (shades === null) return width < 30 ? "R not known" : "weighted reflectance not known";
   const marks = look.ascii ? shades.ascii : shades.signs;
   let text = "R %";
   shades.levels.forEach((level, i) => {
     text += ` ${marks[i] === " " ? "blank" : marks[i]} ${fixed(level, shades.decimals)}`;
   });
-  return `${text} ${marks[shades.levels.length]}`;
+  text += ` ${marks[shades.levels.length]}`;
+  if (text.length <= width) return text;
+  // Without blanks: a level between the marks of what lies below and above it; whole levels only.
+  let short = "R %";
+  shades.levels.forEach((level, i) => {
+    const next = `${i === 0 ? " " : marks[i]}${fixed(level, shades.decimals)}`;
+    if (short.length + next.length + 1 <= width) short += next;
+  });
+  return `${short}${marks[shades.levels.length]}`.slice(0, width);
 }
 
 /** Box signs by corner; ASCII twins `+ - |`. */

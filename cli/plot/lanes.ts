@@ -74,7 +74,7 @@ export function laneSummary(name: string, unit: string, decimals: number, plot: 
   if (last === undefined || last.value === null) return `${name}: not measured yet.`;
   const outside = seen.filter((point) => laneOf(point.value as number, plot.goal).lane !== 1).length;
   const shown = `${fixed(last.value, decimals)}${unit === "" ? "" : ` ${unit}`}`;
-  return `${name} ${shown}, ${offGoal(last.value, plot.goal, unit, decimals)}; ${outside} of ${seen.length} runs outside the goal.`;
+  return `${name} last read ${shown}, ${offGoal(last.value, plot.goal, unit, decimals)}; ${outside} of ${seen.length} runs outside the goal.`;
 }
 
 /** "2.9 nm low", or "in goal". */

@@ -2,9 +2,10 @@
  * Why a command cannot be given now, in a sentence: shown when its key is pressed, and used to mark it in the footer.
  * Null means that it can.
  */
-import type { ChamberRow, OpenChange } from "../../recipes/index.ts";
+import type { OpenChange } from "../../recipes/index.ts";
 import type { CommandId } from "../keys.ts";
-import { chamberInHand, chambersShown, type State } from "./state.ts";
+import { mustLook } from "./advice-words.ts";
+import { chamberInHand, chambersShown, openChangeOf, type State } from "./state.ts";
 import { sameSettings } from "./what-if.ts";
 
 const writing: readonly CommandId[] = [
@@ -54,12 +55,8 @@ function draftIsNow(state: State): boolean {
 
 /** The open change of the chamber in hand, from whichever screen shows it. */
 export function openChange(state: State): OpenChange | null {
-  if (state.screen === "chamber") return state.chamber?.view.openChange ?? null;
-  return rowInHand(state)?.openChange ?? null;
-}
-
-function rowInHand(state: State): ChamberRow | null {
-  return state.overview?.chambers.find((row) => row.chamber === state.chosen) ?? null;
+  const name = chamberInHand(state);
+  return name === null ? null : openChangeOf(state, name);
 }
 
 function whyNotAdopt(state: State): string | null {
@@ -72,6 +69,7 @@ function whyNotAdopt(state: State): string | null {
     case "measure":
       return "nothing to adopt: the advice is to measure once more before any change";
     case "fault":
+      if (mustLook(proposal.alarms)) return "not to be corrected further before a person has looked; p says why";
       return "not to be tuned away: look for the fault first; the alarm names the checks";
     default:
   }

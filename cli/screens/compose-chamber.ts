@@ -14,7 +14,8 @@ import { type ChamberState, roomOf } from "./state.ts";
 export function composeChamber(chamber: ChamberState, width: number, height: number, look: Look): Band[] {
   const room = roomOf(width, height + 6);
   if (room === "small") {
-    const pictureWidth = Math.floor(width / 2) - 1;
+    // The numbers need their room: names, two values, units.
+    const pictureWidth = Math.min(Math.floor(width / 2) - 1, width - 36);
     return [
       body(height, [
         {
@@ -66,10 +67,17 @@ function padded(rows: readonly Row[], height: number): Row[] {
 
 /** Settings, expectation and standing, one under the other. */
 function numbers(chamber: ChamberState, width: number, height: number, look: Look): Row[] {
-  const expected = expectedRows(chamber, { width, height, look });
+  const { alarms, openChange, proposal } = chamber.view;
+  // What stands at the foot is worth more than the last rows of the expectation.
+  const foot = (alarms.length > 0 ? 1 : 0) + (openChange !== null ? 1 : 0) + (proposal !== null ? 1 : 0);
+  const fewSettings = 4;
+  const expected = expectedRows(chamber, { width, height: height - fewSettings - 1 - Math.min(foot, 2), look });
   const settings = settingsRows(chamber, {
     width,
-    height: Math.max(3, Math.min(chamber.view.settings.length + 1, height - expected.length - 3)),
+    height: Math.max(
+      fewSettings,
+      Math.min(chamber.view.settings.length + 1, height - expected.length - 1 - Math.max(foot, height > 14 ? 2 : 0)),
+    ),
     look,
   });
   // The blank before the last block goes first when room is short.

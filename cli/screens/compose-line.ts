@@ -36,7 +36,7 @@ export function composeLine(state: State, width: number, height: number, look: L
   const listHeight = Math.min(room, Math.max(1, shown.length * 6));
   const rest = room - listHeight;
   const withTable = rest >= tableHeight;
-  const list = lineListRows(shown, overview.goal, state.chosen, { width, height: withTable ? listHeight : room, look });
+  const list = lineListRows(shown, state.chosen, { width, height: withTable ? listHeight : room, look });
   const bands = [
     ...(top.length > 0 ? [band("top", top, top.length)] : []),
     band("list", list, withTable ? listHeight : room),

@@ -4,13 +4,14 @@
  */
 import type { Look } from "../palette.ts";
 import { fill, type Row, rowText } from "../text/rows.ts";
+import { wrap } from "../text/width.ts";
 import { composeChamber } from "./compose-chamber.ts";
 import { composeLine } from "./compose-line.ts";
 import { hintFor } from "./hints.ts";
 import { dialogRows } from "./panes/dialogs.ts";
 import { footRow, headHeight, headRows, messageRows } from "./panes/frame.ts";
 import { pageRows, scrolledRows } from "./panes/pages.ts";
-import type { State } from "./state.ts";
+import { type State, smallest, tooSmall } from "./state.ts";
 
 /** Rows with the place they take beside their neighbours. */
 export interface Placed {
@@ -26,8 +27,6 @@ export interface Band {
   panes: readonly Placed[];
 }
 
-export const smallest = { columns: 60, rows: 18 };
-
 export function compose(state: State, look: Look): Band[] {
   const { columns: width, rows: height } = state;
   const whole = (key: string, rows: readonly Row[], bandHeight: number): Band => ({
@@ -35,9 +34,10 @@ export function compose(state: State, look: Look): Band[] {
     height: bandHeight,
     panes: [{ key, width, rows }],
   });
-  if (width < smallest.columns || height < smallest.rows) {
-    const text = `enlarge to ${smallest.columns}x${smallest.rows} or more (is ${width}x${height}); nothing is lost`;
-    return [whole("small", [[{ text }]], height)];
+  if (tooSmall(state)) {
+    const text = `enlarge to ${smallest.columns}x${smallest.rows} or more (is ${width}x${height}); nothing is lost; Q leaves`;
+    const rows = wrap(text, width).map((line): Row => [{ text: line }]);
+    return [whole("small", rows, height)];
   }
   const top = state.layers.at(-1) ?? null;
   const asked = top === null ? null : dialogRows(state, top, width, look);

@@ -20,11 +20,14 @@ export interface ScreenDesk {
   propose(chamber: string): Promise<ProposalView>;
   /** Opens a change. `sheet` is what to type in at the tool, a line each. */
   adopt(proposal: string, reason: string): Promise<{ change: string; sheet: string[] }>;
-  /** The change has been typed in at the tool. Returns one sentence to show, as the others below. */
-  enter(change: string): Promise<string>;
+  /**
+   * The change has been typed in at the tool; `readBack` holds values that differ from the ones adopted (canonical units).
+   * Returns one sentence to show, as the others below.
+   */
+  enter(change: string, readBack?: ReadonlyMap<string, number>): Promise<string>;
   logRun(chamber: string, run: RunTyped): Promise<string>;
   recordClean(chamber: string): Promise<string>;
-  /** Closes a change against the runs since: expected beside got, a sentence each. */
+  /** Closes a change against the runs since: the verdict, then expected beside got, a sentence each. */
   close(change: string): Promise<string[]>;
   undo(change: string, reason: string): Promise<string>;
   /** Forgets what was read; the next call reads the folder again. */

@@ -2,7 +2,7 @@
  * What each command does on the line and chamber screens, once it is known that it may be given.
  */
 import type { CommandId } from "../keys.ts";
-import { openChange } from "./available.ts";
+import { openChange, whyNot } from "./available.ts";
 import { helpLines } from "./help.ts";
 import { nudge, tryDraft } from "./reduce-value.ts";
 import { emptyForm } from "./run-form.ts";
@@ -54,12 +54,27 @@ export function giveCommand(state: State, id: CommandId): Step {
     case "filter":
       return step({ ...state, filtering: true, filter: state.filter ?? emptyField });
     case "help":
-      return over(state, { kind: "reading", title: "keys", lines: helpLines(placeOf(state)), scroll: 0 });
+      return over(state, {
+        kind: "reading",
+        title: "keys",
+        lines: helpLines(placeOf(state), (one) => whyNot(state, one)),
+        scroll: 0,
+      });
     case "commands":
       return over(state, { kind: "commands", field: emptyField, cursor: 0 });
     case "messages": {
       const lines = state.log.length === 0 ? ["nothing was said yet"] : state.log.map((message) => message.text);
       return over(state, { kind: "reading", title: "messages, oldest first", lines, scroll: 0 });
+    }
+    case "learned": {
+      if (chamber === null) return step(state);
+      const { alarms, learned, cannotTell } = chamber.view;
+      const part = (title: string, lines: readonly string[]) =>
+        lines.length === 0 ? [] : [title, ...lines.map((line) => `-  ${line}`), ""];
+      const lines = [...part("ALARMS", alarms), ...part("learned", learned), ...part("cannot tell", cannotTell)];
+      const nothing = ["nothing is learned yet: log runs"];
+      const title = `${name}: what the model knows`;
+      return over(state, { kind: "reading", title, lines: lines.length === 0 ? nothing : lines, scroll: 0 });
     }
     case "less":
       return nudge(state, -1);
@@ -99,11 +114,11 @@ export function giveCommand(state: State, id: CommandId): Step {
     }
     case "enter-change":
       if (change === null) return step(state);
-      return over(state, {
-        kind: "confirm",
-        question: `${change.change}: have all its settings been typed in at ${name}?`,
-        onYes: { do: "enter", chamber: name, change: change.change },
-      });
+      return step(
+        { ...state, layers: [...state.layers, { kind: "entering", chamber: name, change, readBack: new Map() }] },
+        // The settings, for a value that reads back differently.
+        ...(state.screen === "line" ? [{ do: "peek", chamber: name } as const] : []),
+      );
     case "log-run":
       return step(
         { ...state, layers: [...state.layers, { kind: "form", chamber: name, form: emptyForm }] },

@@ -5,7 +5,14 @@
  */
 import { StringDecoder } from "node:string_decoder";
 
-export type Input = { kind: "key"; name: string; text: string } | { kind: "paste"; text: string };
+export type Input = { kind: "key"; name: string; text: string } | Paste;
+
+/** What was pasted, one line of it; `more` when there were further ones. */
+export interface Paste {
+  kind: "paste";
+  text: string;
+  more?: true;
+}
 
 const pasteStart = "\u001b[200~";
 const pasteEnd = "\u001b[201~";
@@ -83,7 +90,7 @@ export class KeyReader {
     this.pasting = ((this.pasting ?? "") + this.waiting.slice(0, safe)).slice(0, longestPaste);
     this.waiting = this.waiting.slice(safe);
     if (end < 0) return false;
-    out.push({ kind: "paste", text: pasted(this.pasting) });
+    out.push(pasted(this.pasting));
     this.pasting = null;
     this.waiting = this.waiting.slice(pasteEnd.length);
     return true;
@@ -182,10 +189,19 @@ function reportLength(text: string, final: boolean): number {
   return final || text.length > longestReport ? text.length : 0;
 }
 
-/** One line of pasted text: ends of line and tabs become spaces, other controls vanish. */
-function pasted(text: string): string {
-  return text
-    .replace(/\r\n|[\r\n\t]/g, " ")
-    .replace(/[\u0000-\u001f\u007f-\u009f]/g, "")
-    .trimEnd();
+/**
+ * The first line of pasted text that is not empty: lines glued together would be a value nobody copied. Tabs become
+ * spaces, other controls vanish.
+ */
+function pasted(text: string): Paste {
+  const lines = text
+    .split(/\r\n|[\r\n]/)
+    .map((line) =>
+      line
+        .replaceAll("\t", " ")
+        .replace(/[\u0000-\u001f\u007f-\u009f]/g, "")
+        .trimEnd(),
+    )
+    .filter((line) => line !== "");
+  return { kind: "paste", text: lines[0] ?? "", ...(lines.length > 1 ? { more: true } : {}) };
 }

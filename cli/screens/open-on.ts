@@ -1,7 +1,9 @@
 /** The screens' desk over a real workspace: every question and every act goes to the recipes room. */
 import {
   adopt,
+  asQuantities,
   chamberView,
+  changeAt,
   close,
   enter,
   overview,
@@ -11,6 +13,7 @@ import {
   propose,
   recordEvent,
   recordRun,
+  stepsOf,
   undo,
   type Workspace,
   whatIf,
@@ -20,17 +23,31 @@ import { openScreens } from "./open.tsx";
 
 export function deskOver(ws: Workspace): ScreenDesk {
   const withNotices = (sentence: string, notices: readonly string[]) => [sentence, ...notices].join(" ");
+  // The recipe each chamber was last shown with: what is asked and written is about what is on the screen.
+  const shown = new Map<string, string>();
   return {
-    overview: () => overview(ws),
-    chamber: (name) => chamberView(ws, name),
-    whatIf: (chamber, settings) => whatIf(ws, chamber, settings),
-    propose: async (chamber) => proposalView(ws, await propose(ws, { chamber, forMode: null, dryRun: false })),
+    overview: () => {
+      const line = overview(ws);
+      for (const row of line.chambers) if (row.recipe !== "") shown.set(row.chamber, row.recipe);
+      return line;
+    },
+    chamber: (name) => {
+      const view = chamberView(ws, name);
+      shown.set(name, view.recipe);
+      return view;
+    },
+    whatIf: (chamber, settings) => whatIf(ws, chamber, settings, shown.get(chamber)),
+    propose: async (chamber) =>
+      proposalView(ws, await propose(ws, { chamber, recipe: shown.get(chamber), forMode: null, dryRun: false })),
     adopt: async (proposal, reason) => {
       const done = await adopt(ws, { proposal: parseProposalId(proposal), reason, entered: false });
       return { change: done.change, sheet: done.sheet };
     },
-    enter: async (change) => {
-      const done = await enter(ws, { change: parseChangeId(change), readBack: [] });
+    enter: async (change, read) => {
+      const number = parseChangeId(change);
+      const chamber = ws.chamber(changeAt(ws.ledger, number).chamber);
+      const readBack = read && read.size > 0 ? stepsOf(Object.entries(asQuantities(read, chamber))) : [];
+      const done = await enter(ws, { change: number, readBack });
       return withNotices(`${done.change} is in force: run and measure next.`, [...done.warnings, ...done.notices]);
     },
     logRun: async (chamber, run) => {
@@ -38,6 +55,7 @@ export function deskOver(ws: Workspace): ScreenDesk {
         ws,
         {
           chamber,
+          recipe: shown.get(chamber),
           index: run.index ?? undefined,
           thickness: run.thicknessNm ?? undefined,
           reflectanceMinimum: run.reflectanceMinimumNm ?? undefined,
@@ -52,7 +70,7 @@ export function deskOver(ws: Workspace): ScreenDesk {
     },
     close: async (change) => {
       const done = await close(ws, { change: parseChangeId(change) });
-      return [`${done.change} is closed: ${done.verdict.verdict}.`, ...done.verdict.lines];
+      return [`${done.verdict.verdict}.`, ...done.verdict.lines];
     },
     undo: async (change, reason) => {
       const done = await undo(ws, { change: parseChangeId(change), reason });

@@ -79,7 +79,7 @@ async function carryOut(
 function write(desk: ScreenDesk, effect: Extract<Effect, { do: "enter" | "log" | "clean" | "undo" }>): Promise<string> {
   switch (effect.do) {
     case "enter":
-      return desk.enter(effect.change);
+      return desk.enter(effect.change, effect.readBack);
     case "log":
       return desk.logRun(effect.chamber, effect.run);
     case "clean":

@@ -4,10 +4,12 @@
 import { type CommandId, commandFor } from "../keys.ts";
 import { whyNot } from "./available.ts";
 import { bodyHeightOf } from "./compose.ts";
+import { notHere } from "./elsewhere.ts";
 import { adopt, giveCommand } from "./give-command.ts";
 import { helpLines, matching } from "./help.ts";
 import type { Input } from "./keyboard.ts";
 import { farthest, pageRows } from "./panes/pages.ts";
+import { reduceEntering, reduceReadBack } from "./reduce-entering.ts";
 import { runOf } from "./run-form.ts";
 import { say } from "./say.ts";
 import { type Effect, type Layer, placeOf, type State, type Step } from "./state.ts";
@@ -22,9 +24,13 @@ export function reduceLayer(state: State, input: Input): Step {
   switch (top.kind) {
     case "proposal":
     case "reading":
-      return reduceReading(state, top, command);
+      return reduceReading(state, top, command, input);
     case "confirm":
       return reduceConfirm(state, top, command);
+    case "entering":
+      return reduceEntering(state, top, command);
+    case "read-back":
+      return reduceReadBack(state, top, input, command);
     case "reason":
       return reduceReason(state, top, input, command);
     case "name":
@@ -48,9 +54,17 @@ function send(state: State, effect: Effect, busy: string): Step {
   return { state: { ...state, busy }, effects: [effect] };
 }
 
-function reduceReading(state: State, top: Of<"proposal"> | Of<"reading">, command: CommandId | null): Step {
+function reduceReading(
+  state: State,
+  top: Of<"proposal"> | Of<"reading">,
+  command: CommandId | null,
+  input: Input,
+): Step {
   const scrolls: Partial<Record<CommandId, number>> = { up: -1, down: 1, "page-up": -10, "page-down": 10 };
-  if (command === null) return still(say(state, "plain", "that key does nothing here; q goes back"));
+  if (command === null) {
+    const there = input.kind === "key" ? notHere(state, input.name) : null;
+    return still(say(state, "plain", there ?? "that key does nothing here; q goes back"));
+  }
   if (command === "first") return still(replace(state, { ...top, scroll: 0 }));
   const end = farthest(
     pageRows(state, top, state.columns, { colour: "none", ascii: false })?.length ?? 0,
@@ -63,7 +77,10 @@ function reduceReading(state: State, top: Of<"proposal"> | Of<"reading">, comman
   if (command === "help")
     return still({
       ...state,
-      layers: [...state.layers, { kind: "reading", title: "keys", lines: helpLines("proposal"), scroll: 0 }],
+      layers: [
+        ...state.layers,
+        { kind: "reading", title: "keys", lines: helpLines("proposal", (id) => whyNot(state, id)), scroll: 0 },
+      ],
     });
   if (command === "enter-change") {
     const reason = whyNot(state, "enter-change");
@@ -125,8 +142,13 @@ function reduceForm(state: State, top: Of<"form">, input: Input, command: Comman
   if (command === "accept") {
     if (form.at < last) return goTo(form.at + 1);
     const checked = runOf(form);
-    if ("problem" in checked)
-      return still(say(replace(state, { ...top, form: { ...form, at: checked.at } }), "watch", checked.problem));
+    if ("problem" in checked) {
+      const there = replace(state, { ...top, form: { ...form, at: checked.at } });
+      // What is wrong with a field stands under the fields already.
+      return still(
+        say(there, "watch", checked.marked ? "not logged yet: put the marked field right" : checked.problem),
+      );
+    }
     if (state.busy !== null) return still(say(state, "watch", `wait: ${state.busy}`));
     return send(state, { do: "log", chamber: top.chamber, run: checked.run }, "writing to the book");
   }

@@ -5,12 +5,13 @@
 import { commandFor } from "../keys.ts";
 import { adviceInWords } from "./advice-words.ts";
 import { whyNot } from "./available.ts";
+import { notHere } from "./elsewhere.ts";
 import { giveCommand, sheetLayer } from "./give-command.ts";
 import type { Input } from "./keyboard.ts";
 import { reduceLayer } from "./reduce-layer.ts";
 import { reduceValue } from "./reduce-value.ts";
 import { say } from "./say.ts";
-import { type ChamberState, chambersShown, type Event, placeOf, type State, type Step } from "./state.ts";
+import { type ChamberState, chambersShown, type Event, placeOf, type State, type Step, tooSmall } from "./state.ts";
 import { typed } from "./text-field.ts";
 import { sameSettings } from "./what-if.ts";
 
@@ -44,7 +45,7 @@ export function reduce(state: State, event: Event): Step {
       const known =
         view?.chamber === event.chamber ? withChamber(state, { ...view, proposal: event.proposal }, false) : state;
       const id = event.proposal.proposal;
-      const text = `${event.chamber}: ${adviceInWords(event.proposal.advice)}${id === null ? "" : `, kept as ${id}`}`;
+      const text = `${event.chamber}: ${adviceInWords(event.proposal)}${id === null ? "" : `, kept as ${id}`}`;
       return still(say({ ...known, layers, busy: null }, "plain", text));
     }
     case "adopted": {
@@ -55,7 +56,9 @@ export function reduce(state: State, event: Event): Step {
     case "done":
       return still(say({ ...state, busy: null, layers: withoutAsking(state.layers) }, "good", event.text));
     case "closed": {
-      const layers = [{ kind: "reading", title: `${event.change} is closed`, lines: event.lines, scroll: 0 } as const];
+      const back = `To take it back after all: coatwright undo ${event.change} --reason TEXT`;
+      const lines = [...event.lines, "", back];
+      const layers = [{ kind: "reading", title: `${event.change} is closed`, lines, scroll: 0 } as const];
       return still(say({ ...state, busy: null, layers }, "good", `${event.change} is closed: ${event.lines[0] ?? ""}`));
     }
     case "failed":
@@ -114,9 +117,19 @@ function sameBasis(a: ChamberState["view"], b: ChamberState["view"]): boolean {
 }
 
 function reduceInput(state: State, input: Input): Step {
+  const step = reduceOne(state, input);
+  const several = input.kind === "paste" && input.more === true && step.state.message === null && step.state !== state;
+  return several
+    ? { ...step, state: say(step.state, "watch", "what was pasted had several lines: only the first was taken") }
+    : step;
+}
+
+function reduceOne(state: State, input: Input): Step {
   const place = placeOf(state);
   const key = input.kind === "key" ? input.name : null;
   if (key === "ctrl-c") return { state, effects: [{ do: "leave" }] };
+  // Nobody should press what they cannot see: only the way out works until there is room again.
+  if (tooSmall(state)) return { state, effects: key === "Q" ? [{ do: "leave" }] : [] };
   if (key === "ctrl-l") return { state, effects: [{ do: "repaint" }] };
   if (key === "ctrl-z") return { state, effects: [{ do: "suspend" }] };
   const cleared = state.message === null ? state : { ...state, message: null };
@@ -126,7 +139,8 @@ function reduceInput(state: State, input: Input): Step {
   if (key === null) return still(say(cleared, "plain", "nothing to paste into here"));
   if (place === "chamber" && /^[0-9.]$/.test(key)) return reduceValue(cleared, input);
   const command = commandFor(place, key);
-  if (command === null) return still(say(cleared, "plain", "that key does nothing here; ? shows those that do"));
+  if (command === null)
+    return still(say(cleared, "plain", notHere(state, key) ?? "that key does nothing here; ? shows those that do"));
   const reason = whyNot(cleared, command.id);
   if (reason !== null) return still(say(cleared, "watch", reason));
   return giveCommand(cleared, command.id);

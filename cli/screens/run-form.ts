@@ -73,14 +73,14 @@ export function expectedOf(view: ChamberView): [Interval | null, Interval | null
   return [index, thickness_nm, reflectance_minimum_nm];
 }
 
-/** The run, or the one reason why it cannot be logged yet. */
-export function runOf(form: RunForm): { run: RunTyped } | { problem: string; at: number } {
+/** The run, or the one reason why it cannot be logged yet; `marked` when that stands at a field already. */
+export function runOf(form: RunForm): { run: RunTyped } | { problem: string; at: number; marked: boolean } {
   const checks = form.fields.map((field, i) => checkField(i, field.text, null));
   const wrong = checks.findIndex((check) => check.problem !== null);
-  if (wrong >= 0) return { problem: checks[wrong].problem as string, at: wrong };
+  if (wrong >= 0) return { problem: checks[wrong].problem as string, at: wrong, marked: true };
   const [index, thicknessNm, reflectanceMinimumNm] = checks.map((check) => check.value);
   if (index === null && thicknessNm === null && reflectanceMinimumNm === null) {
-    return { problem: "type at least one reading; leave the others empty", at: 0 };
+    return { problem: "type at least one reading; leave the others empty", at: 0, marked: false };
   }
   return { run: { index, thicknessNm, reflectanceMinimumNm } };
 }

@@ -1,7 +1,7 @@
 /**
  * Everything the screens remember, as data. What changes it is in `reduce.ts`; what is drawn from it, in the panes.
  */
-import type { ChamberView, LineOverview, Outlook, ProposalView } from "../../recipes/index.ts";
+import type { ChamberView, LineOverview, OpenChange, Outlook, ProposalView } from "../../recipes/index.ts";
 import type { Place } from "../keys.ts";
 import type { RunTyped } from "./desk.ts";
 import type { Input } from "./keyboard.ts";
@@ -36,7 +36,7 @@ export type Effect =
   | { do: "look"; chamber: string; settings: ReadonlyMap<string, number> }
   | { do: "propose"; chamber: string }
   | { do: "adopt"; chamber: string; proposal: string; reason: string }
-  | { do: "enter"; chamber: string; change: string }
+  | { do: "enter"; chamber: string; change: string; readBack?: ReadonlyMap<string, number> }
   | { do: "log"; chamber: string; run: RunTyped }
   | { do: "clean"; chamber: string }
   | { do: "close"; chamber: string; change: string }
@@ -51,6 +51,15 @@ export type Layer =
   | { kind: "reason"; title: string; about: readonly string[]; field: TextField; onYes: ReasonFor }
   | { kind: "name"; question: string; expected: string; field: TextField; onYes: Effect }
   | { kind: "confirm"; question: string; onYes: Effect }
+  | { kind: "entering"; chamber: string; change: OpenChange; readBack: ReadonlyMap<string, number> }
+  | {
+      kind: "read-back";
+      chamber: string;
+      change: OpenChange;
+      readBack: ReadonlyMap<string, number>;
+      at: number;
+      field: TextField;
+    }
   | { kind: "form"; chamber: string; form: RunForm }
   | { kind: "reading"; title: string; lines: readonly string[]; scroll: number; sheet?: true }
   | { kind: "commands"; field: TextField; cursor: number };
@@ -117,6 +126,13 @@ export function startState(columns: number, rows: number): State {
   };
 }
 
+/** The smallest window the screens are drawn in; below it they only say so, and take no key but those that leave. */
+export const smallest = { columns: 60, rows: 18 };
+
+export function tooSmall(state: Pick<State, "columns" | "rows">): boolean {
+  return state.columns < smallest.columns || state.rows < smallest.rows;
+}
+
 /** Where the next key goes. */
 export function placeOf(state: State): Place {
   const top = state.layers.at(-1);
@@ -138,6 +154,12 @@ export function chambersShown(state: State): LineOverview["chambers"] {
 /** The chamber that commands act on: the one open, else the one chosen. */
 export function chamberInHand(state: State): string | null {
   return state.screen === "chamber" ? (state.chamber?.view.chamber ?? null) : state.chosen;
+}
+
+/** The open change of a chamber, from whichever screen knows the chamber. */
+export function openChangeOf(state: State, chamber: string): OpenChange | null {
+  if (state.screen === "chamber" && state.chamber?.view.chamber === chamber) return state.chamber.view.openChange;
+  return state.overview?.chambers.find((row) => row.chamber === chamber)?.openChange ?? null;
 }
 
 export type Room = "small" | "medium" | "large";

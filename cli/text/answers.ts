@@ -10,11 +10,19 @@ const advices: Record<string, string> = {
   out_of_reach: "OUT OF REACH inside the window; the nearest point is shown",
 };
 
+/** Past the anchor nothing need be broken: it is a person who is asked for. */
+const headline = ({ advice, alarms }: Proposed["answer"]) =>
+  advice === "fault" && alarms.some((a) => a.name === "past_anchor")
+    ? "A PERSON MUST LOOK before more is corrected"
+    : advices[advice];
+
 const list = (title: string, items: readonly string[]) =>
   items.length ? [title, ...items.map((i) => `  - ${safeText(i)}`)] : [];
 
 export function percentText(chance: number | null): string {
-  return chance === null ? "not judged" : `${(100 * chance).toFixed(chance > 0.1 && chance < 0.99 ? 0 : 1)} %`;
+  if (chance === null) return "not judged";
+  if (chance < 0.005) return "under 1 %";
+  return `${(100 * chance).toFixed(chance > 0.1 && chance < 0.99 ? 0 : 1)} %`;
 }
 
 function settingsRows(
@@ -74,7 +82,7 @@ export function proposalText(ws: Workspace, done: Proposed): string {
         ? `to adopt: coatwright adopt ${done.proposal} --reason TEXT`
         : `kept as ${done.proposal}`;
   return [
-    `${chamber.name}, recipe ${recipe}, ${answer.mode}: ${advices[answer.advice]}${answer.done ? " (tuning is done)" : ""}`,
+    `${chamber.name}, recipe ${recipe}, ${answer.mode}: ${headline(answer)}${answer.done ? " (tuning is done)" : ""}`,
     `goal: ${goalText(ws.goal(recipe))}`,
     "",
     ...(moved ? [...settingsRows(chamber, answer.before, answer.after), ""] : []),

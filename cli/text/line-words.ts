@@ -11,15 +11,16 @@ export function due(row: ChamberRow): { text: string; key: string; tone: Tone } 
   const change = row.openChange?.change ?? "the change";
   switch (row.attention) {
     case "fault":
-      return { text: "FAULT: find it before any tuning", key: "enter", tone: "alarm" };
+      if (row.alarm === "past_anchor") return { text: "A PERSON MUST LOOK: past the anchor", key: "p", tone: "alarm" };
+      return { text: "FAULT: find it first", key: "enter", tone: "alarm" };
     case "propose":
       return { text: "OFF: ask for a proposal", key: "p", tone: "watch" };
     case "measure":
       return { text: "UNSURE: measure a run", key: "l", tone: "watch" };
     case "enter":
-      return { text: `OPEN: type ${change} in at the tool`, key: "e", tone: "watch" };
+      return { text: `OPEN: type in ${change}`, key: "e", tone: "watch" };
     case "close":
-      return { text: `OPEN: judge and close ${change}`, key: "c", tone: "watch" };
+      return { text: `OPEN: close ${change}`, key: "c", tone: "watch" };
     case "keep":
       return { text: "FINE: leave it alone", key: "", tone: "good" };
     case "no data":
@@ -29,7 +30,7 @@ export function due(row: ChamberRow): { text: string; key: string; tone: Tone } 
 
 /** The state of an open change in a few words. */
 export function changeInWords(change: OpenChange): string {
-  if (change.state === "adopted") return `${change.change} adopted, not entered yet`;
+  if (change.state === "adopted") return `${change.change} adopted, not entered`;
   const runs = change.runsSince === 0 ? "no run" : change.runsSince === 1 ? "1 run" : `${change.runsSince} runs`;
   return `${change.change} entered, ${runs} since`;
 }
@@ -49,6 +50,14 @@ export function goalInBrief(goal: Goal): string {
       : [`R at most ${fixed(goal.weightedReflectancePercent.atMost, 1)} %`]),
     ...(goal.reflectanceMinimumNm === undefined ? [] : [`minimum ${around(goal.reflectanceMinimumNm)} nm`]),
   ].join(", ");
+}
+
+/** The goal in the words that fit `width`, from whole to shortest; `measure` tells the cells a text will take. */
+export function goalToFit(goal: Goal, whole: string, width: number, measure: (text: string) => number): string {
+  const brief = goalInBrief(goal);
+  const shorter = brief.replace("R at most ", "R max ").replace("minimum ", "min ");
+  const forms = [whole, brief, shorter, shorter.replace("index ", "n ").replace("R max ", "R<=")];
+  return forms.find((text) => measure(text) <= width) ?? forms[forms.length - 1];
 }
 
 /**

@@ -2,10 +2,10 @@
  * The line as plain text, for pipes and for terminals that cannot hold the screens: the same words as the line screen,
  * the one that needs attention first, each trend as a sentence.
  */
-import type { ChamberRow, Goal, LineOverview, RunSeen } from "../../recipes/index.ts";
+import type { ChamberRow, LineOverview, RunSeen } from "../../recipes/index.ts";
 import type { Look } from "../palette.ts";
 import { laneSummary } from "../plot/lanes.ts";
-import { changeInWords, counted, due } from "./line-words.ts";
+import { changeInWords, counted, due, goalInBrief } from "./line-words.ts";
 import { chanceText, chanceWord } from "./numbers.ts";
 import { painted, type Row, words } from "./rows.ts";
 import { wrap } from "./width.ts";
@@ -24,17 +24,18 @@ export function overviewText(
     ...wrapped(`goal: ${overview.goalText} (${overview.lightText})`, 0, options.width, look),
   ];
   for (const warning of overview.warnings) rows.push(...wrapped(`! ${warning}`, 0, options.width, look));
-  for (const row of overview.chambers) rows.push([], ...chamberRows(row, overview.goal, options.width, look));
+  for (const row of overview.chambers) rows.push([], ...chamberRows(row, overview, options.width, look));
   if (overview.chambers.length === 0) rows.push([], [{ text: "the line declares no chamber yet" }]);
   return rows.map((row) => painted(row, look)).join("\n") + "\n";
 }
 
-function chamberRows(row: ChamberRow, goal: Goal, width: number, look: Look): Row[] {
+function chamberRows(row: ChamberRow, overview: LineOverview, width: number, look: Look): Row[] {
+  const { goal } = row;
   const next = due(row);
   const facts = [
     `in goal ${chanceText(row.chanceInGoal)} (${chanceWord(row.chanceInGoal)})`,
     counted(row.runs, "run"),
-    `${counted(row.depositionsSinceClean, "deposition")} since clean`,
+    ...(row.cleaned ? [`${counted(row.depositionsSinceClean, "deposition")} since clean`] : []),
     ...(row.awaitingReadings > 0 ? [`${row.awaitingReadings} awaiting readings`] : []),
     ...(row.openChange === null ? [] : [changeInWords(row.openChange)]),
   ].join(", ");
@@ -44,6 +45,9 @@ function chamberRows(row: ChamberRow, goal: Goal, width: number, look: Look): Ro
       { text: "  " },
       { ...words(next.text, look), tone: next.tone },
     ],
+    ...(goalInBrief(goal) === goalInBrief(overview.goal)
+      ? []
+      : wrapped(`goal of ${row.recipe}: ${goalInBrief(goal)}`, 2, width, look)),
     ...wrapped(row.sentence, 2, width, look),
     ...wrapped(facts, 2, width, look),
   ];

@@ -18,6 +18,10 @@ export interface Material {
   readonly rangeNm: readonly [number, number];
   /** Complex index at a vacuum wavelength in nm. Refuses (code "outside-table") outside `rangeNm`. */
   at(wavelengthNm: number): OpticalConstants;
+  /** The same n alone, where that is cheaper. */
+  indexAt?(wavelengthNm: number): number;
+  /** The same as `at` along a whole grid, where that is cheaper. */
+  along?(wavelengthNm: ArrayLike<number>): OpticalConstantsOnGrid;
 }
 
 /** Complex index on a whole wavelength grid: two arrays as long as the grid. */
@@ -28,6 +32,7 @@ export interface OpticalConstantsOnGrid {
 
 /** Evaluates a material on a grid of wavelengths (nm). Refuses as `Material.at` does. */
 export function onGrid(material: Material, wavelengthNm: ArrayLike<number>): OpticalConstantsOnGrid {
+  if (material.along) return material.along(wavelengthNm);
   const n = new Float64Array(wavelengthNm.length);
   const k = new Float64Array(wavelengthNm.length);
   for (let i = 0; i < wavelengthNm.length; i++) {

@@ -53,6 +53,8 @@ interface Family {
   rangeNm: readonly [number, number];
   /** Wavelengths of the tables' rows within the range, nm. */
   rows: Float64Array;
+  /** k of those with a measured k, at the rows. */
+  extinction: readonly Float64Array[];
 }
 
 let made: Family | null = null;
@@ -66,13 +68,30 @@ function family(): Family {
   const ranges = [low, middle, high].map((m) => m.material.rangeNm);
   const first = Math.max(...ranges.map((r) => r[0]));
   const last = Math.min(...ranges.map((r) => r[1]));
+  const rows = wavelengthGrid(first, last, rowNm);
   made = {
     withIndex: [low, middle, high],
     withExtinction: [low, high],
     rangeNm: [first, last],
-    rows: wavelengthGrid(first, last, rowNm),
+    rows,
+    extinction: [low, high].map((m) => rows.map((row) => m.material.at(row).k)),
   };
   return made;
+}
+
+const indexOf = (material: Material, wavelengthNm: number): number =>
+  material.indexAt ? material.indexAt(wavelengthNm) : material.at(wavelengthNm).n;
+
+/** Index of every member along a grid, kept as long as the grid is: a wafer asks for dozens of films on the same one. */
+const membersAlong = new WeakMap<object, Float64Array[]>();
+
+function membersOn(wavelengthNm: ArrayLike<number>): Float64Array[] {
+  let known = membersAlong.get(wavelengthNm);
+  if (!known) {
+    known = family().withIndex.map(({ material }) => Float64Array.from(wavelengthNm, (nm) => indexOf(material, nm)));
+    membersAlong.set(wavelengthNm, known);
+  }
+  return known;
 }
 
 /** Indices at 632.8 nm of the measured members, increasing: where the family's lines join. */
@@ -102,12 +121,14 @@ export function siliconNitride(index: number): NitrideMaterial {
       { hint: "give the film as a table of wavelength_nm,n,k instead" },
     );
   }
-  const { withIndex, withExtinction, rangeNm, rows } = family();
+  const { withIndex, withExtinction, rangeNm, rows, extinction } = family();
   const [n0, n1] = neighbours(withIndex, index);
   const [k0, k1] = neighbours(withExtinction, index);
   const nShare = (index - n0.index) / (n1.index - n0.index);
   const kShare = (index - k0.index) / (k1.index - k0.index);
-  const kRows = Array.from(rows, (row) => mixedExtinction(k0.material.at(row).k, k1.material.at(row).k, kShare));
+  const [lower, upper] = [withExtinction.indexOf(k0), withExtinction.indexOf(k1)].map((i) => extinction[i]);
+  const kRows: number[] = [];
+  for (let i = 0; i < rows.length; i++) kRows.push(mixedExtinction(lower[i], upper[i], kShare));
   const kCurve = extinctionCurve(rows, kRows);
   return {
     name: "silicon nitride",
@@ -117,9 +138,23 @@ export function siliconNitride(index: number): NitrideMaterial {
     extrapolated: index < withIndex[0].index || index > withIndex[withIndex.length - 1].index,
     at(wavelengthNm) {
       requireInRange("silicon nitride", rangeNm, wavelengthNm);
-      const a = n0.material.at(wavelengthNm).n;
-      const b = n1.material.at(wavelengthNm).n;
+      const a = indexOf(n0.material, wavelengthNm);
+      const b = indexOf(n1.material, wavelengthNm);
       return { n: a + nShare * (b - a), k: kCurve(wavelengthNm) };
+    },
+    along(wavelengthNm) {
+      const count = wavelengthNm.length;
+      for (let i = 0; i < count; i++) requireInRange("silicon nitride", rangeNm, wavelengthNm[i]);
+      const members = membersOn(wavelengthNm);
+      const a = members[withIndex.indexOf(n0)];
+      const b = members[withIndex.indexOf(n1)];
+      const n = new Float64Array(count);
+      const k = new Float64Array(count);
+      for (let i = 0; i < count; i++) {
+        n[i] = a[i] + nShare * (b[i] - a[i]);
+        k[i] = kCurve(wavelengthNm[i]);
+      }
+      return { n, k };
     },
   };
 }

@@ -37,6 +37,10 @@ export function tabulated(data: MaterialData): Material {
     name: data.name,
     source: data.source,
     rangeNm,
+    indexAt(wavelengthNm) {
+      requireInRange(data.name, rangeNm, wavelengthNm);
+      return nCurve(wavelengthNm);
+    },
     at(wavelengthNm): OpticalConstants {
       requireInRange(data.name, rangeNm, wavelengthNm);
       return { n: nCurve(wavelengthNm), k: kCurve(wavelengthNm) };
@@ -49,7 +53,7 @@ export function tabulated(data: MaterialData): Material {
  * k > 0, each stretch a curve of its own so that a zero next door does not bend it; straight where an end has k = 0.
  */
 export function extinctionCurve(wavelengthNm: Float64Array, k: readonly number[]): Curve {
-  const straight = piecewiseLinear(wavelengthNm, k);
+  let straight: Curve | null = null;
   const logarithmic = new Array<Curve | undefined>(k.length - 1).fill(undefined);
   let start = 0;
   while (start < k.length) {
@@ -63,7 +67,9 @@ export function extinctionCurve(wavelengthNm: Float64Array, k: readonly number[]
   }
   return (at) => {
     const logK = logarithmic[intervalOf(wavelengthNm, at)];
-    return logK ? Math.exp(logK(at)) : straight(at);
+    if (logK) return Math.exp(logK(at));
+    straight ??= piecewiseLinear(wavelengthNm, k);
+    return straight(at);
   };
 }
 

@@ -55,14 +55,20 @@ export function minimise(f: (x: number) => number, low: number, high: number, to
     if (value <= atBest) {
       if (x < best) b = best;
       else a = best;
-      [third, second, best] = [second, best, x];
-      [atThird, atSecond, atBest] = [atSecond, atBest, value];
+      third = second;
+      atThird = atSecond;
+      second = best;
+      atSecond = atBest;
+      best = x;
+      atBest = value;
     } else {
       if (x < best) a = x;
       else b = x;
       if (value <= atSecond || second === best) {
-        [third, second] = [second, x];
-        [atThird, atSecond] = [atSecond, value];
+        third = second;
+        atThird = atSecond;
+        second = x;
+        atSecond = value;
       } else if (value <= atThird || third === best || third === second) {
         third = x;
         atThird = value;

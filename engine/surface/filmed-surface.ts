@@ -4,7 +4,7 @@
  */
 import { type Material, type OpticalConstantsOnGrid, onGrid } from "../materials/material.ts";
 import { OneFilm } from "../optics/one-film.ts";
-import { addPaths, type PathSum } from "./path-sum.ts";
+import { addPaths, addReflections, type PathSum } from "./path-sum.ts";
 import { type SeenFrom, type Surroundings, surroundings } from "./seen-from.ts";
 
 /** Everything about a wafer that does not depend on its film, on one wavelength grid; light comes straight down. */
@@ -37,6 +37,8 @@ export class FilmedSurface {
   readonly transmittance: Float64Array;
   /** In the film. What is in none of the three was absorbed in the cover. */
   readonly absorptance: Float64Array;
+  /** Index of the film along the grid. */
+  readonly filmIndex: Float64Array;
   private readonly film: OneFilm;
   private readonly bounceReflectance: Float64Array;
   private readonly bounceTransmittance: Float64Array;
@@ -44,11 +46,13 @@ export class FilmedSurface {
 
   constructor(bare: BareSurface, film: Material) {
     const count = bare.wavelengthNm.length;
+    const constants = onGrid(film, bare.wavelengthNm);
     this.bare = bare;
+    this.filmIndex = constants.n;
     this.film = new OneFilm({
       wavelengthNm: bare.wavelengthNm,
       incidenceIndex: bare.around.incidenceIndex,
-      film: onGrid(film, bare.wavelengthNm),
+      film: constants,
       substrate: bare.silicon,
       anglesRad: bare.paths.anglesRad,
     });
@@ -57,6 +61,17 @@ export class FilmedSurface {
     this.absorptance = new Float64Array(count);
     this.bounceReflectance = new Float64Array(count * bare.paths.anglesRad.length);
     this.bounceTransmittance = new Float64Array(count * bare.paths.anglesRad.length);
+  }
+
+  /**
+   * Fills `reflectance` alone, at the wavelengths from place `first` to before `end`: all when left out. Refuses as `evaluate`.
+   */
+  reflect(thicknessNm: number, first = 0, end = this.reflectance.length): void {
+    const { paths, wavelengthNm, around } = this.bare;
+    this.film.evaluate(thicknessNm, this.bounceReflectance, null, first, end);
+    addReflections(paths, wavelengthNm.length, this.bounceReflectance, this.reflectance, first, end);
+    if (!around.cover) return;
+    for (let i = first; i < end; i++) this.reflectance[i] = around.cover.over(i, this.reflectance[i]).reflectance;
   }
 
   /** Fills the three results for a thickness on the surface (on the facet, for pyramids), nm. Refuses as `OneFilm` does. */
@@ -80,5 +95,39 @@ export class FilmedSurface {
       this.transmittance[i] *= covered.reach;
       this.absorptance[i] *= covered.reach;
     }
+  }
+}
+
+/** One wavelength, any film: the curve a minimum is closed in on. Built once a wafer; the cover is left off. */
+export class FilmedSpot {
+  private readonly film: OneFilm;
+  private readonly bounceReflectance: Float64Array;
+  private readonly reflected = new Float64Array(1);
+
+  constructor(
+    private readonly paths: PathSum,
+    private readonly silicon: Material,
+    private readonly incidenceIndexAt: (wavelengthNm: number) => number,
+  ) {
+    const nowhere = { n: Float64Array.of(1), k: Float64Array.of(0) };
+    this.film = new OneFilm({
+      wavelengthNm: Float64Array.of(1),
+      incidenceIndex: Float64Array.of(1),
+      film: nowhere,
+      substrate: nowhere,
+      anglesRad: paths.anglesRad,
+    });
+    this.bounceReflectance = new Float64Array(paths.anglesRad.length);
+  }
+
+  /** Reflectance (fraction) of a film at a wavelength, nm. Refuses as the materials and `OneFilm` do. */
+  reflectance(film: Material, thicknessNm: number, wavelengthNm: number): number {
+    const { bounceReflectance, reflected, paths } = this;
+    const on = film.at(wavelengthNm);
+    const under = this.silicon.at(wavelengthNm);
+    this.film.aim(0, wavelengthNm, this.incidenceIndexAt(wavelengthNm), on.n, on.k, under.n, under.k);
+    this.film.evaluate(thicknessNm, bounceReflectance, null);
+    addReflections(paths, 1, bounceReflectance, reflected);
+    return reflected[0];
   }
 }

@@ -41,11 +41,30 @@ export function addPaths(
   for (const { fraction, bounces } of sum.paths) {
     for (let i = 0; i < wavelengths; i++) {
       let left = fraction;
-      for (const bounce of bounces) {
-        const at = bounce * wavelengths + i;
+      for (let b = 0; b < bounces.length; b++) {
+        const at = bounces[b] * wavelengths + i;
         outTransmittance[i] += left * transmittance[at];
         left *= reflectance[at];
       }
+      outReflectance[i] += left;
+    }
+  }
+}
+
+/** The reflectance of `addPaths` alone, at the wavelengths from place `first` to before `end`. */
+export function addReflections(
+  sum: PathSum,
+  wavelengths: number,
+  reflectance: Float64Array,
+  outReflectance: Float64Array,
+  first = 0,
+  end = wavelengths,
+): void {
+  outReflectance.fill(0, first, end);
+  for (const { fraction, bounces } of sum.paths) {
+    for (let i = first; i < end; i++) {
+      let left = fraction;
+      for (let b = 0; b < bounces.length; b++) left *= reflectance[bounces[b] * wavelengths + i];
       outReflectance[i] += left;
     }
   }

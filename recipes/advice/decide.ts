@@ -18,9 +18,9 @@ import type { Advice } from "../outlook.ts";
 import { type Alarm, alarmsFrom } from "./alarms.ts";
 import { cautionsFor } from "./cautions.ts";
 import type { CellLight } from "./cell-light.ts";
-import { chanceAt, type Expectation, expectation } from "./expectation.ts";
+import { type Choice, choose, filmInside } from "./choose.ts";
+import { type Expectation, expectation } from "./expectation.ts";
 import { chanceOf, goalNames, isLight } from "./goal-region.ts";
-import { tunedLevers } from "./levers.ts";
 import { deadBand, type MeasuredRun, type Mode, measuredInGoal, modeOf } from "./mode.ts";
 import { filmLoss } from "./objective.ts";
 import {
@@ -33,7 +33,6 @@ import {
   runsWord,
   sistersSentence,
 } from "./reasons.ts";
-import { bestSettings } from "./search.ts";
 
 export interface Question {
   line: Line;
@@ -82,10 +81,13 @@ const doneShare = 0.9;
 export function decide(q: Question): Answer {
   const context = { line: q.line, goal: q.goal, light: q.light, sites: q.sites };
   const now = expectation(q.model, q.before, context);
-  const best = search(q);
+  // Inside the anchor first. A recipe already past it cannot be held inside: there a person is asked for.
+  const pastNow = q.anchor !== null && anchorUse(q.anchor, q.before, q.line).some((use) => use.past);
+  const held = q.anchor !== null && !pastNow && !q.overridden.has("past_anchor");
+  const best = choose({ ...q, anchor: held ? q.anchor : null });
   const moved = [...best.settings].some(([name, value]) => q.before.get(name) !== value);
-  const then = moved ? expectation(q.model, best.settings, context) : now;
-  const attainable = attainableChance(q, then);
+  const ahead = moved ? expectation(q.model, best.settings, context) : now;
+  const attainable = attainableChance(q, ahead);
   const lastRead = q.runsSinceEvent.at(-1) ?? q.runsSinceClean.at(-1);
   const hit = lastRead ? measuredInGoal(lastRead, q.goal) === true : false;
   const done = hit && now.chanceJudged >= doneShare * attainable;
@@ -93,37 +95,37 @@ export function decide(q: Question): Answer {
   const alarms = alarmsFrom(q.suspicions, q.overridden);
   const because = opening(q, now);
   const finish = (advice: Advice, after: Settings, more: string[]): Answer => {
-    const same = after === q.before;
+    const shown = after === q.before ? now : ahead;
     return {
       advice,
       mode,
       before: q.before,
       after,
       now,
-      ahead: same ? now : then,
+      ahead: shown,
       done,
       because: [...because, ...more],
       cannotTell: [
-        ...new Set([...now.cannotTell, ...then.cannotTell, ...untold(q.model, q.levers).map((u) => u.sentence)]),
+        ...new Set([
+          ...unusable(q),
+          ...now.cannotTell,
+          ...shown.cannotTell,
+          ...untold(q.model, q.levers).map((u) => u.sentence),
+        ]),
       ],
       alarms,
       cautions: cautionsFor(q.chamber, q.before, after),
     };
   };
-
-  const certain = alarms.filter((a) => a.certain);
-  if (certain.length > 0)
-    return finish(
+  const stop = (found: readonly Alarm[]) =>
+    finish(
       "fault",
       q.before,
-      certain.flatMap((a) => [a.sentence, `First checks: ${a.checks.join(" ")}`]),
+      found.flatMap((a) => [a.sentence, `First checks: ${a.checks.join(" ")}`, overruleSentence(q, a)]),
     );
-  const adopted = q.openChange?.state === "adopted" ? q.openChange : null;
-  if (adopted && [...best.settings].every(([name, value]) => adopted.after.get(name) === value))
-    return finish("keep", q.before, [
-      `Change ${adopted.change} already asks for the best settings known: enter it at the tool (or undo it).`,
-    ]);
-  if (adopted) because.push(`Change ${adopted.change} is adopted but not entered: adopting another one supersedes it.`);
+
+  const certain = alarms.filter((a) => a.certain);
+  if (certain.length > 0) return stop(certain);
   if (q.openChange?.state === "entered" && q.openChange.runsSince === 0)
     return finish("measure", q.before, [
       `Change ${q.openChange.change} was entered and no run has been measured since: run and measure it first.`,
@@ -138,92 +140,64 @@ export function decide(q: Question): Answer {
       `${q.chamber.name} has no measured run and no sisters: run the recipe as it is and measure it.`,
     ]);
 
-  const lossNow = filmLoss(q.model.quick(q.before), q.goal, q.light);
-  const gain = lossNow - filmLoss(q.model.quick(best.settings), q.goal, q.light);
-  const outsideNow = outside(q.before, q.chamber, q.line);
-  const reached = reaches(q, then);
-  const better = then.chanceJudged - now.chanceJudged;
-
-  if (!best.inside)
-    return finish("out_of_reach", q.before, [
-      "No settings inside the qualified window were found.",
-      ...outsideNow.map((f) => f.sentence),
-    ]);
-  if (outsideNow.length === 0 && reached) {
+  const gain =
+    filmLoss(q.model.quick(q.before), q.goal, q.light) - filmLoss(q.model.quick(best.settings), q.goal, q.light);
+  const settled = outside(q.before, q.chamber, q.line).length === 0;
+  const reached = best.inside && reaches(q, ahead);
+  if (settled && (reached || reaches(q, now))) {
     const doubt = openDoubt(q);
     if (doubt) return finish("measure", q.before, [doubt]);
-    if (!moved || gain <= deadBand[mode] || better < worthwhile[mode])
-      return finish("keep", q.before, keepReasons(q, now, then, best.settings, mode));
+    if (!moved || gain <= deadBand[mode] || ahead.chanceJudged - now.chanceJudged < worthwhile[mode])
+      return finish("keep", q.before, keepReasons(q, now, ahead, best.settings, mode));
+    const noise = mode === "production" ? oneReading(q) : null;
+    if (noise) return finish("measure", q.before, [noise]);
   }
-  const anchor = q.anchor ? anchorUse(q.anchor, best.settings, q.line).filter((use) => use.past) : [];
-  if (anchor.length > 0 && !q.overridden.has("past_anchor")) {
-    const past: Alarm = {
-      name: "past_anchor",
-      certain: true,
-      sentence: `past_anchor: ${anchor.map((a) => a.sentence).join(" ")}`,
-      checks: [
-        "Look for a slow leak, a drifting controller or a drifting gauge before absorbing more.",
-        "If the film is right as it is, requalify the recipe and state it with `record recipe`.",
-      ],
-    };
-    alarms.push(past);
-    return finish("fault", q.before, [past.sentence, `First checks: ${past.checks.join(" ")}`]);
+  if (reached) return finish("change", best.settings, changeReasons(q, best, ahead, attainable));
+
+  if (held || pastNow) {
+    const free = choose({ ...q, anchor: null });
+    const film = expectation(q.model, free.settings, context);
+    if (free.inside && q.anchor && !q.overridden.has("past_anchor") && reaches(q, film)) {
+      const past = pastAnchor(q, q.anchor, free.settings);
+      alarms.push(past);
+      return stop([past]);
+    }
   }
-  if (!reached)
-    return finish("out_of_reach", best.settings, [
-      `Nothing inside the window reaches the goal: the nearest point has ${missWords(then.film, q.goal).join(" and ") || "the reflectance goal unmet"}, a chance of ${asPercent(then.chanceJudged)}.`,
-      ...bindingLimits(best.settings, q.chamber, q.line).map((f) => f.sentence),
-    ]);
-  return finish(
-    "change",
-    best.settings,
-    changeReasons(
-      q,
-      best.settings,
-      then,
-      attainable,
-      outsideNow.map((f) => f.sentence),
-    ),
-  );
+  if (!best.inside) return finish("out_of_reach", q.before, ["No settings inside the qualified window were found."]);
+  return finish("out_of_reach", best.settings, [
+    `Nothing inside the window reaches the goal: the nearest point has ${missWords(ahead.film, q.goal, 0).join(" and ") || "the reflectance goal unmet"}, a chance of ${asPercent(ahead.chanceJudged)}.`,
+    ...bindingLimits(best.settings, q.chamber, q.line).map((f) => f.sentence),
+  ]);
 }
 
-/** What one more moved lever must gain, in loss: a tenth of a tolerance squared is 0.01. */
-const perLever = 0.02;
-
-/**
- * The fewest levers that do: time alone, then with one gas, then with both; power, pressure and the rest only when those
- * do not bring the film inside. A bigger set must gain more than the price of its levers.
- */
-function search(q: Question) {
-  const levers = tunedLevers(q.chamber).filter((l) => q.before.has(l.name));
-  const context = { model: q.model, line: q.line, chamber: q.chamber, goal: q.goal, light: q.light, before: q.before };
-  const gases = levers.filter((l) => !l.reserve && l.setting.meaning !== "time" && l.setting.meaning !== "belt_speed");
-  const time = levers.filter((l) => !l.reserve && !gases.includes(l));
-  const sets = [time, ...gases.map((g) => [...time, g]), ...(gases.length > 1 ? [[...time, ...gases]] : [])].filter(
-    (s) => s.length > 0,
-  );
-  let best: (ReturnType<typeof bestSettings> & { priced: number }) | null = null;
-  for (const set of sets) {
-    const found = bestSettings({ ...context, levers: set });
-    const gasesMoved = gases.filter((g) => found.settings.get(g.name) !== q.before.get(g.name)).length;
-    const priced = found.loss + perLever * gasesMoved;
-    if (!best || priced < best.priced) best = { ...found, priced };
-  }
-  const few = best ?? { ...bestSettings({ ...context, levers }), priced: 0 };
-  if (levers.every((l) => !l.reserve)) return few;
-  const film = q.model.quick(few.settings);
-  return few.inside && filmInside(q, film.index, Math.exp(film.lnThickness))
-    ? few
-    : bestSettings({ ...context, levers });
+/** The correction needed would take the recipe further from the last qualified one than the line allows. */
+function pastAnchor(q: Question, anchor: Settings, wanted: Settings): Alarm {
+  const past = anchorUse(anchor, wanted, q.line).filter((use) => use.past);
+  const moves = moveWords(q.chamber, q.before, wanted).join(", ");
+  return {
+    name: "past_anchor",
+    certain: true,
+    sentence: `past_anchor: the correction needed (${moves}) would take ${past.map((use) => `${use.text} ${(100 * Math.abs(use.used)).toFixed(1)} % ${use.used < 0 ? "below" : "above"} the last qualified recipe, past the ${Number((100 * use.limit).toPrecision(3))} % allowed`).join(" and ")}: a person must look before more is corrected.`,
+    checks: [
+      "Look for a slow leak, a drifting controller or a drifting gauge.",
+      "On a ramp, or when the film is right as it is, qualify the recipe anew and state it with `record recipe`: corrections add up from there.",
+    ],
+  };
 }
 
-const filmInside = (q: Question, index: number, thicknessNm: number): boolean =>
-  (!q.goal.index || Math.abs(index - q.goal.index.value) <= q.goal.index.within) &&
-  (!q.goal.thicknessNm || Math.abs(thicknessNm - q.goal.thicknessNm.value) <= q.goal.thicknessNm.within);
+const overruleSentence = (q: Question, a: Alarm) =>
+  `To go on after the look: coatwright record note --chamber ${q.chamber.name} --override ${a.name} --runs 5 --text EVIDENCE (it ends after these runs or at the next clean).`;
+
+/** Measured runs whose settings make no sense: left out, said, and mended by a correction. */
+const unusable = (q: Question): string[] =>
+  q.model.log.unusable.map(
+    ({ entry, missing }) =>
+      `Entry ${entry} has no usable ${missing} and teaches nothing: coatwright correct ${entry} ${missing}=VALUE --reason TEXT.`,
+  );
 
 /** Does the mean film of an expectation meet every judged goal? */
 function reaches(q: Question, e: Expectation): boolean {
-  if (!filmInside(q, e.film.index, e.film.thicknessNm)) return false;
+  if (!filmInside(q.goal, e.film.index, e.film.thicknessNm)) return false;
   if (q.light.unjudged) return true;
   const facetNm = e.film.thicknessNm * q.light.facet.mean;
   const minimum = q.goal.reflectanceMinimumNm;
@@ -269,8 +243,28 @@ function openDoubt(q: Question): string | null {
   if (doubt < undecided[0] || doubt > undecided[1]) return null;
   const expected = { index: last.expectedIndex.mean, thicknessNm: last.expectedThickness.mean };
   const read = { index: last.index ?? expected.index, thicknessNm: last.thicknessNm ?? expected.thicknessNm };
-  if (!filmInside(q, expected.index, expected.thicknessNm) || filmInside(q, read.index, read.thicknessNm)) return null;
+  if (!filmInside(q.goal, expected.index, expected.thicknessNm) || filmInside(q.goal, read.index, read.thicknessNm))
+    return null;
   return `The last reading (entry ${last.entry}: index ${read.index.toFixed(3)}, ${read.thicknessNm.toFixed(1)} nm) is out of goal where index ${expected.index.toFixed(3)}, ${expected.thicknessNm.toFixed(1)} nm was expected: a bad measurement with ${asPercent(last.suspect)} probability, a step nobody logged with ${asPercent(last.step)}. Measure that wafer again, or run once more as it is.`;
+}
+
+/** Readings further out than this many standard deviations count as a surprise worth a second look. */
+const surprising = 1.5;
+
+/**
+ * In production, a change that one surprising reading alone calls for is chasing noise: before it the film was expected
+ * well inside the goal. A second reading that agrees is what a change should rest on.
+ */
+function oneReading(q: Question): string | null {
+  const last = q.record.at(-1);
+  if (!last || Math.max(Math.abs(last.surpriseIndex ?? 0), Math.abs(last.surpriseThickness ?? 0)) < surprising)
+    return null;
+  const { index, thicknessNm } = q.goal;
+  const miss = (goal: { value: number; within: number } | undefined, value: number) =>
+    goal ? ((value - goal.value) / goal.within) ** 2 : 0;
+  const before = miss(index, last.expectedIndex.mean) + miss(thicknessNm, last.expectedThickness.mean);
+  if (before > 2 * deadBand.production) return null;
+  return `Only the last reading (entry ${last.entry}) speaks for a change: before it the film was expected at index ${last.expectedIndex.mean.toFixed(3)}, ${last.expectedThickness.mean.toFixed(1)} nm. Measure one more run before moving anything.`;
 }
 
 /** A reading left aside as bad is said, so that nobody wonders why it moved nothing. */
@@ -281,9 +275,11 @@ function leftAside(q: Question): string | null {
 }
 
 function opening(q: Question, now: Expectation): string[] {
-  const out: string[] = [];
+  const out = outside(q.before, q.chamber, q.line).map((f) => `In force now: ${f.sentence}`);
   const cycle = q.runsSinceClean.length > 0 && q.model.log.events.some((e) => e.kind === "clean");
-  const read = readSentence(q.runsSinceClean.length ? q.runsSinceClean : q.runsSinceEvent, q.goal, cycle);
+  const bad = new Set(q.record.filter((r) => r.suspect > undecided[1] - r.step).map((r) => r.entry));
+  const runs = (q.runsSinceClean.length ? q.runsSinceClean : q.runsSinceEvent).filter((r) => !bad.has(r.entry));
+  const read = readSentence(runs, q.goal, cycle);
   if (read) out.push(read);
   if (!q.stated)
     out.push("No recipe was ever stated for this chamber: the settings of its latest run are taken as in force.");
@@ -308,46 +304,36 @@ function keepReasons(q: Question, now: Expectation, then: Expectation, best: Set
   ];
 }
 
-function changeReasons(
-  q: Question,
-  after: Settings,
-  then: Expectation,
-  attainable: number,
-  outsideNow: string[],
-): string[] {
-  const out = [...outsideNow, `Proposed: ${moveWords(q.chamber, q.before, after).join(", ")}.`];
+function changeReasons(q: Question, best: Choice, ahead: Expectation, attainable: number): string[] {
+  const after = best.settings;
+  const out: string[] = [];
+  const adopted = q.openChange?.state === "adopted" ? q.openChange : null;
+  if (adopted)
+    out.push(
+      [...after].every(([name, value]) => adopted.after.get(name) === value)
+        ? `Change ${adopted.change} already asks for exactly this: enter it at the tool (coatwright enter ${adopted.change}) rather than adopting it again.`
+        : `Change ${adopted.change} is adopted but not entered: adopting this one supersedes it.`,
+    );
+  out.push(`Proposed: ${moveWords(q.chamber, q.before, after).join(", ")}.`);
   out.push(...effectSentences(q.model, q.chamber, q.before, after));
-  out.push(expectSentence("With it", then, q.light));
-  if (then.chanceJudged < 0.5)
+  out.push(expectSentence("With it", ahead, q.light));
+  if (ahead.chanceJudged < 0.5)
     out.push(
       "This is an exploratory run: the chance is under one half, and its reading is what makes the next proposal sure.",
     );
-  if (attainable - then.chanceJudged > 0.05)
+  if (attainable - ahead.chanceJudged > 0.05)
     out.push(
       `A chamber known perfectly would reach ${asPercent(attainable)}; the rest is what is not yet known of ${q.chamber.name}.`,
     );
-  const timeOnly = timeAlone(q, after);
-  if (timeOnly) out.push(timeOnly);
+  if (best.runnerUp)
+    out.push(
+      `Runner-up: ${moveWords(q.chamber, q.before, best.runnerUp.settings).join(", ")} would have a chance of ${asPercent(best.runnerUp.chance)}.`,
+    );
   out.push(...bindingLimits(after, q.chamber, q.line).map((f) => f.sentence));
+  for (const use of q.anchor ? anchorUse(q.anchor, after, q.line) : [])
+    if (Math.abs(use.used) > use.limit / 2)
+      out.push(
+        `With this, corrections of ${use.text} add up to ${(100 * use.used).toFixed(1)} % from the last qualified recipe, of ${Number((100 * use.limit).toPrecision(3))} % allowed before a person must look.`,
+      );
   return out;
-}
-
-/** The runner-up an engineer asks about first: what if only the time is moved? */
-function timeAlone(q: Question, proposed: Settings): string | null {
-  const time = tunedLevers(q.chamber).filter((l) => l.setting.meaning === "time" || l.setting.meaning === "belt_speed");
-  if (time.length === 0) return null;
-  const best = bestSettings({
-    model: q.model,
-    line: q.line,
-    chamber: q.chamber,
-    goal: q.goal,
-    light: q.light,
-    before: q.before,
-    levers: time,
-  });
-  if (!best.inside) return null;
-  const words = moveWords(q.chamber, q.before, best.settings);
-  const same = [...best.settings].every(([name, value]) => proposed.get(name) === value);
-  if (words.length === 0 || same) return null;
-  return `Runner-up: ${words.join(", ")} alone has a chance of ${asPercent(chanceAt(q.model, best.settings, q))}.`;
 }

@@ -11,6 +11,8 @@ export type Mode = "tuning" | "production";
 export const deadBand: Record<Mode, number> = { tuning: 0.02, production: 0.1 };
 
 export interface MeasuredRun {
+  /** Its entry in the book. */
+  entry: number;
   index: number | null;
   thicknessNm: number | null;
   reflectanceMinimumNm: number | null;
@@ -18,7 +20,7 @@ export interface MeasuredRun {
 }
 
 /** Was this reading inside every goal it speaks to? Null when it speaks to none. */
-export function measuredInGoal(run: MeasuredRun, goal: Goal): boolean | null {
+export function measuredInGoal(run: Omit<MeasuredRun, "entry">, goal: Goal): boolean | null {
   const checks: boolean[] = [];
   if (goal.index && run.index !== null) checks.push(Math.abs(run.index - goal.index.value) <= goal.index.within);
   if (goal.thicknessNm && run.thicknessNm !== null)

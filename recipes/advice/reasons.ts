@@ -19,17 +19,24 @@ const list = (names: readonly string[]) =>
   names.length < 2 ? names.join("") : `${names.slice(0, -1).join(", ")} and ${names.at(-1)}`;
 export const runsWord = (count: number) => `${count} run${count === 1 ? "" : "s"}`;
 
-/** "thickness 2.9 nm low" and the like, for a film beside its goal; empty when within a tenth of the tolerance. */
-export function missWords(film: { index: number | null; thicknessNm: number | null }, goal: Goal): string[] {
+/**
+ * "thickness 2.9 nm low" and the like, for a film beside its goal; misses within `from` of the tolerance are not worth a
+ * word.
+ */
+export function missWords(
+  film: { index: number | null; thicknessNm: number | null },
+  goal: Goal,
+  from = 0.6,
+): string[] {
   const out: string[] = [];
   if (goal.thicknessNm && film.thicknessNm !== null) {
     const miss = film.thicknessNm - goal.thicknessNm.value;
-    if (Math.abs(miss) > 0.1 * goal.thicknessNm.within)
+    if (Math.abs(miss) > from * goal.thicknessNm.within)
       out.push(`thickness ${asNm(Math.abs(miss))} nm ${miss < 0 ? "low" : "high"}`);
   }
   if (goal.index && film.index !== null) {
     const miss = film.index - goal.index.value;
-    if (Math.abs(miss) > 0.1 * goal.index.within)
+    if (Math.abs(miss) > from * goal.index.within)
       out.push(`index ${asIndex(Math.abs(miss))} ${miss < 0 ? "low" : "high"}`);
   }
   return out;
@@ -41,7 +48,7 @@ export function readSentence(runs: readonly MeasuredRun[], goal: Goal, sinceClea
   const index = average(last.map((r) => r.index));
   const thicknessNm = average(last.map((r) => r.thicknessNm));
   if (last.length === 0 || (index === null && thicknessNm === null)) return null;
-  const misses = missWords({ index, thicknessNm }, goal);
+  const misses = missWords({ index, thicknessNm }, goal, 0.1);
   const which = `${last.length === 1 ? "The last measured run" : `The last ${last.length} measured runs`}${sinceClean ? " since the clean" : ""}`;
   const values = [
     index === null ? null : `index ${asIndex(index)}`,

@@ -5,9 +5,10 @@
  * reflectance limit starts to bind.
  */
 import type { ChamberModel, Settings } from "../../calibration/index.ts";
+import { evaluate } from "../line/expression.ts";
 import type { Chamber, Goal, Line } from "../line/line.ts";
 import { snapInside, typeable } from "../line/settings.ts";
-import { outside } from "../line/window.ts";
+import { anchorUse, outside } from "../line/window.ts";
 import type { CellLight } from "./cell-light.ts";
 import type { TunedLever } from "./levers.ts";
 import { loss } from "./objective.ts";
@@ -20,6 +21,8 @@ export interface SearchContext {
   light: CellLight;
   before: Settings;
   levers: readonly TunedLever[];
+  /** Given, corrections may not add up past the line's anchor from this recipe. */
+  anchor?: Settings | null;
 }
 
 export interface Candidate {
@@ -38,13 +41,18 @@ export function bestSettings(context: SearchContext): Candidate {
     const key = context.levers.map((l) => settings.get(l.name)).join(" ");
     const known = seen.get(key);
     if (known) return known;
-    const findings = outside(settings, context.chamber, context.line);
+    const findings = certainlyInside(settings, context) ? [] : outside(settings, context.chamber, context.line);
     const excess = findings.reduce(
       (sum, f) => sum + Math.abs(f.value - (f.value > f.high ? f.high : f.low)) / Math.max(Math.abs(f.value), 1e-9),
       0,
     );
-    const value = loss(context.model, settings, context) + (findings.length ? outsidePrice * (1 + excess) : 0);
-    const candidate = { settings, loss: value, inside: findings.length === 0 };
+    let past = 0;
+    if (context.anchor)
+      for (const use of anchorUse(context.anchor, settings, context.line))
+        if (use.past) past += Math.abs(use.used) - use.limit;
+    const inside = findings.length === 0 && past === 0;
+    const value = loss(context.model, settings, context) + (inside ? 0 : outsidePrice * (1 + excess + past));
+    const candidate = { settings, loss: value, inside };
     seen.set(key, candidate);
     return candidate;
   };
@@ -81,6 +89,21 @@ export function bestSettings(context: SearchContext): Candidate {
     if (clean.has(lever.name) && clean.get(lever.name) !== context.before.get(lever.name))
       clean.set(lever.name, snapInside(clean.get(lever.name) as number, lever.setting));
   return { ...best, settings: clean };
+}
+
+/**
+ * Is every limit kept without any slack? Then `outside`, which words its findings, need not be asked: nearly all of the
+ * thousands of candidates are inside.
+ */
+function certainlyInside(settings: Settings, { chamber, line }: SearchContext): boolean {
+  for (const [name, value] of settings) {
+    const setting = chamber.settings.get(name);
+    if (setting && !(value >= setting.low && value <= setting.high)) return false;
+  }
+  return line.window.every((limit) => {
+    const value = evaluate(limit, settings);
+    return value === null || (value >= limit.low && value <= limit.high);
+  });
 }
 
 /** Multiples of a lever's smallest step inside its range, for a search that asks thousands of times. */

@@ -43,12 +43,12 @@ export function chamberModel(ws: Workspace, chamber: string): ChamberModel {
   return model.chamber(chamber);
 }
 
-const measuredRun = (ws: Workspace, run: RunRecord): MeasuredRun & { seq: number } => {
+const measuredRun = (ws: Workspace, run: RunRecord): MeasuredRun => {
   const film = filmReading(ws.line, run.readings);
   const light = lightReadings(ws.line, run.readings);
   const of = (kind: string) => light.find((l) => l.kind === kind)?.value ?? null;
   return {
-    seq: run.seq,
+    entry: run.seq,
     index: film?.index ?? null,
     thicknessNm: film?.thicknessNm ?? null,
     reflectanceMinimumNm: of("reflectance_minimum_nm"),
@@ -57,9 +57,9 @@ const measuredRun = (ws: Workspace, run: RunRecord): MeasuredRun & { seq: number
 };
 
 /** Measured runs since the last clean, since the last event that starts tuning, and how many since the last reading are unread. */
-export function recentRuns(ws: Workspace, chamber: string) {
-  const sinceClean: (MeasuredRun & { seq: number })[] = [];
-  const sinceEvent: (MeasuredRun & { seq: number })[] = [];
+export function recentRuns(ws: Workspace, chamber: string, recipe: string) {
+  const sinceClean: MeasuredRun[] = [];
+  const sinceEvent: MeasuredRun[] = [];
   let clean = true;
   let event = true;
   let awaiting = 0;
@@ -67,8 +67,9 @@ export function recentRuns(ws: Workspace, chamber: string) {
     if (e.kind === "clean" || e.kind === "service") {
       if (e.kind === "clean") clean = false;
       event = false;
-    } else if (e.kind === "version") event = false;
-    else if (e.kind === "run") {
+    } else if (e.kind === "version") {
+      if (e.recipe === recipe) event = false;
+    } else if (e.kind === "run" && e.recipe === recipe) {
       if (!wasMeasured(e)) awaiting += sinceClean.length + sinceEvent.length === 0 ? 1 : 0;
       else {
         if (clean) sinceClean.unshift(measuredRun(ws, e));
@@ -94,7 +95,7 @@ export function question(ws: Workspace, name: string, recipe: string, forMode: M
   const force = inForce(ws, name, recipe);
   const anchor = lastQualified(ws.ledger, name, recipe);
   const open = openChange(ws.ledger, name, recipe);
-  const recent = recentRuns(ws, name);
+  const recent = recentRuns(ws, name, recipe);
   return {
     line: ws.line,
     chamber,
@@ -108,7 +109,7 @@ export function question(ws: Workspace, name: string, recipe: string, forMode: M
     anchor: anchor ? canonicalSettings(ws.line, anchor.steps) : null,
     runsSinceEvent: recent.sinceEvent,
     runsSinceClean: recent.sinceClean,
-    record: trackRecord(model, 3),
+    record: trackRecord(model, 8),
     suspicions: suspicions(model),
     overridden: new Set(overridesInForce(ws.ledger, name, ws.ports.now()).map((o) => o.alarm)),
     openChange: open

@@ -28,6 +28,8 @@ export interface Changed extends Written {
   change: string;
   /** What to type in at the tool, or what is in force now: a line each. */
   sheet: string[];
+  /** People of whom one must approve before it is typed in. */
+  awaits?: readonly string[];
   warnings: string[];
 }
 
@@ -95,7 +97,7 @@ export async function adopt(
     { dryRun: how.dryRun },
   );
   const seq = written.receipts[0]?.seq ?? ws.ledger.entries.length;
-  return { ...written, change: changeId(seq), sheet, warnings };
+  return { ...written, change: changeId(seq), sheet, warnings, awaits: ws.line.people.approve };
 }
 
 function insideWindow(ws: Workspace, chamber: string, steps: readonly StepSettings[]): void {

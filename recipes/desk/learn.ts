@@ -12,8 +12,9 @@ import type {
   MinimumOf,
   Settings,
 } from "../../calibration/index.ts";
+import { canonicalUnit } from "../../engine/index.ts";
 import { gaugeCovariance, lightSd } from "../advice/expectation.ts";
-import type { Gauge, Line } from "../line/line.ts";
+import type { Gauge, Line, Setting } from "../line/line.ts";
 import { goalOf } from "../line/line.ts";
 import { fromQuantity } from "../line/settings.ts";
 import type { Reading, StepSettings } from "../record/entries.ts";
@@ -25,11 +26,36 @@ import type { RunRecord, TimelineEvent } from "../record/timeline.ts";
 export function canonicalSettings(line: Line, steps: readonly StepSettings[]): Settings {
   const out = new Map<string, number>();
   if (steps.length !== 1) return out;
-  for (const [name, quantity] of flatSettings(steps)) {
-    const setting = line.settings.get(name);
-    if (setting) out.set(name, fromQuantity(setting, quantity));
+  const known = canonicalUnits(line);
+  const [step] = steps;
+  if (step.name !== undefined) {
+    for (const [name, quantity] of flatSettings(steps)) {
+      const setting = line.settings.get(name);
+      if (setting) out.set(name, fromQuantity(setting, quantity));
+    }
+    return out;
+  }
+  const { settings } = step;
+  for (const name in settings) {
+    const row = known.get(name);
+    if (!row) continue;
+    const { value, unit } = settings[name];
+    out.set(name, unit === row.unit && Number.isFinite(value) ? value : fromQuantity(row.setting, settings[name]));
   }
   return out;
+}
+
+const rows = new WeakMap<Line, Map<string, { setting: Setting; unit: string }>>();
+
+/** Settings with the unit in which a value needs no converting: nearly every one of a long history is written in it. */
+function canonicalUnits(line: Line): Map<string, { setting: Setting; unit: string }> {
+  let known = rows.get(line);
+  if (!known) {
+    known = new Map();
+    for (const [name, setting] of line.settings) known.set(name, { setting, unit: canonicalUnit(setting.dimension) });
+    rows.set(line, known);
+  }
+  return known;
 }
 
 /** The last value read of each film property on a witness, with its gauge's covariance. Null when none was. */
@@ -55,7 +81,8 @@ export function filmReading(line: Line, readings: readonly Reading[]): FilmReadi
 export function lightReadings(line: Line, readings: readonly Reading[]): LightReading[] {
   const out: LightReading[] = [];
   for (const reading of readings) {
-    if (reading.on !== "cell") continue;
+    // On pyramids only the cell has the light the goal speaks of; a polished wafer is its own witness.
+    if (reading.on !== "cell" && line.wafer.surface === "pyramids") continue;
     const gauge = gaugeNamed(line, reading.gauge);
     for (const kind of ["reflectance_minimum_nm", "weighted_reflectance_percent"] as const) {
       const value = reading[kind];

@@ -1,9 +1,11 @@
 /** Looking: the line at a glance, one chamber in full, and the live what-if. Plain data for verbs and screens; writes nothing. */
 import { coverageOf, type Settings, suspicions, trackRecord, untold } from "../../calibration/index.ts";
 import { Refusal } from "../../engine/index.ts";
+import type { Alarm } from "../advice/alarms.ts";
 import { decide } from "../advice/decide.ts";
 import { chancesAlone, type Expectation, expectation } from "../advice/expectation.ts";
 import { asPercent, missWords, runsWord } from "../advice/reasons.ts";
+import type { Goal } from "../line/line.ts";
 import { outside } from "../line/window.ts";
 import type { ChamberRow, ChamberView, LineOverview, OpenChange, Outlook, ProposalView, RunSeen } from "../outlook.ts";
 import { documentSettings, runsSince } from "../record/change-steps.ts";
@@ -11,7 +13,8 @@ import { openChange as openChangeOf } from "../record/changes.ts";
 import { proposalId } from "../record/ids.ts";
 import { chamberRecord, type ProposalRecord, proposalOn } from "../record/ledger.ts";
 import { runsOf, wasMeasured } from "../record/timeline.ts";
-import { chamberModel, inForce, type Proposed, proposalBasis, question, recentRuns } from "./asking.ts";
+import { recipesOf } from "../record/versions.ts";
+import { chamberModel, inForce, type Proposed, proposalBasis, question } from "./asking.ts";
 import { sheetOf } from "./changing.ts";
 import { canonicalSettings, filmReading, leversOf, lightReadings } from "./learn.ts";
 import { learned } from "./learned.ts";
@@ -19,6 +22,19 @@ import { goalText, lightText } from "./words.ts";
 import type { Workspace } from "./workspace.ts";
 
 const order: ChamberRow["attention"][] = ["fault", "enter", "propose", "measure", "close", "no data", "keep"];
+
+/**
+ * The recipe a chamber is looked at with where none is named: its only one, else that of its latest run or stated version.
+ * Throws as `Workspace.recipe`, but for `which-recipe`.
+ */
+export function currentRecipe(ws: Workspace, chamber: string): string {
+  if (recipesOf(ws.ledger, chamber).length < 2) return ws.recipe(chamber);
+  const now = ws.ports.now();
+  const latest = chamberRecord(ws.ledger, chamber).timeline.findLast(
+    (e) => (e.kind === "run" || e.kind === "version") && e.atMs <= now,
+  );
+  return ws.recipe(chamber, latest?.kind === "run" || latest?.kind === "version" ? latest.recipe : undefined);
+}
 
 export function overview(ws: Workspace): LineOverview {
   const chambers = [...ws.line.chambers.keys()].map((name) => chamberRow(ws, name));
@@ -43,21 +59,21 @@ export function overview(ws: Workspace): LineOverview {
 }
 
 function chamberRow(ws: Workspace, name: string): ChamberRow {
-  const runs = runsSeen(ws, name, 12);
-  const base = { chamber: name, lastRuns: runs, runs: runsOf(chamberRecord(ws.ledger, name).timeline).length };
+  const { timeline } = chamberRecord(ws.ledger, name);
+  const runs = runsOf(timeline).length;
+  const cleaned = timeline.some((e) => e.kind === "clean");
   try {
-    const recipe = ws.recipe(name);
+    const recipe = currentRecipe(ws, name);
     const q = question(ws, name, recipe, null);
     const answer = decide(q);
     const open = openChange(ws, name, recipe);
     const chance = answer.now.chanceInGoal ?? answer.now.chanceJudged;
-    const recent = recentRuns(ws, name);
     let attention: ChamberRow["attention"] = "keep";
     let call = "leave it alone";
     const certain = answer.alarms.find((a) => a.certain);
     if (certain) {
       attention = "fault";
-      call = `${certain.name.replace("_", " ")}: look for a fault, do not tune`;
+      call = alarmCall(certain);
     } else if (open?.state === "adopted") {
       attention = "enter";
       call = `${open.change} is adopted: enter it at the tool`;
@@ -71,35 +87,64 @@ function chamberRow(ws: Workspace, name: string): ChamberRow {
       attention = "measure";
       call = open ? `run and measure ${open.change}` : "measure once more";
     }
-    const cleaned = chamberRecord(ws.ledger, name).timeline.some((e) => e.kind === "clean");
-    const since = q.runsSinceClean.length;
-    const when = cleaned ? `${runsWord(since)} since clean` : `new, ${runsWord(q.model.ownReadings)}`;
-    const misses = missWords(answer.now.film, q.goal);
-    const state = misses.length ? misses.join(", ") : "on goal";
+    const few = runs < 10 ? "new" : "no clean logged";
+    const when = cleaned ? `${runsWord(q.runsSinceClean.length)} since clean` : `${few}, ${runsWord(runs)}`;
+    const state = aheadWords(answer.now, q.goal);
     return {
-      ...base,
+      chamber: name,
       recipe,
+      goal: q.goal,
       attention,
+      alarm: certain?.name ?? null,
       sentence: `${when}, ${state}, ${asPercent(chance)} in goal: ${call}`,
       chanceInGoal: chance,
       depositionsSinceClean: q.model.k,
-      awaitingReadings: recent.awaiting,
+      cleaned,
+      runs,
+      lastRuns: runsSeen(ws, name, 12, recipe),
+      awaitingReadings: q.awaitingReadings,
       openChange: open,
     };
   } catch (error) {
     if (!(error instanceof Refusal)) throw error;
     const { message, hint } = error.problems[0];
     return {
-      ...base,
+      chamber: name,
       recipe: "",
+      goal: ws.line.goal,
       attention: "no data",
+      alarm: null,
       sentence: `${message}${hint ? `: ${hint}` : ""}`,
       chanceInGoal: null,
       depositionsSinceClean: 0,
+      cleaned,
+      runs,
+      lastRuns: runsSeen(ws, name, 12),
       awaitingReadings: 0,
       openChange: null,
     };
   }
+}
+
+const alarmCall = (alarm: Alarm): string =>
+  alarm.name === "past_anchor"
+    ? "past the anchor: a person must look before more is corrected"
+    : `${alarm.name.replace("_", " ")}: look for a fault, do not tune`;
+
+/** What the next film is expected to be beside its goal: "expected 2.3 nm thin, index 0.011 low". */
+function aheadWords(ahead: Expectation, goal: Goal): string {
+  const misses = missWords(ahead.film, goal).map((words) =>
+    words.replace(/^thickness (.+) (low|high)$/, (_, off, side) => `${off} ${side === "low" ? "thin" : "thick"}`),
+  );
+  const { weighted_reflectance_percent: weighted, reflectance_minimum_nm: minimum } = ahead.predicted;
+  const most = goal.weightedReflectancePercent?.atMost;
+  if (most !== undefined && weighted && weighted.mean > most)
+    misses.push(`weighted R ${(weighted.mean - most).toFixed(2)} % high`);
+  const off = goal.reflectanceMinimumNm && minimum ? minimum.mean - goal.reflectanceMinimumNm.value : 0;
+  // The same share of the tolerance as missWords goes by.
+  if (goal.reflectanceMinimumNm && Math.abs(off) > 0.6 * goal.reflectanceMinimumNm.within)
+    misses.push(`minimum ${Math.abs(off).toFixed(0)} nm ${off < 0 ? "low" : "high"}`);
+  return `expected ${misses.length > 0 ? misses.join(", ") : "on goal"}`;
 }
 
 function openChange(ws: Workspace, chamber: string, recipe: string): OpenChange | null {
@@ -118,11 +163,13 @@ function openChange(ws: Workspace, chamber: string, recipe: string): OpenChange 
   };
 }
 
-/** The last measured runs of a chamber beside what had been expected of them. */
-export function runsSeen(ws: Workspace, chamber: string, last: number): RunSeen[] {
-  const runs = runsOf(chamberRecord(ws.ledger, chamber).timeline).filter(wasMeasured).slice(-last);
+/** The last measured runs of a chamber, of one recipe or of all, beside what had been expected of them. */
+export function runsSeen(ws: Workspace, chamber: string, last: number, recipe?: string): RunSeen[] {
+  const measured = runsOf(chamberRecord(ws.ledger, chamber).timeline).filter(wasMeasured);
+  const runs = measured.filter((run) => recipe === undefined || run.recipe === recipe).slice(-last);
   if (runs.length === 0 || !ws.model) return [];
-  const record = new Map(trackRecord(ws.model.chamber(chamber), last).map((r) => [r.entry, r]));
+  const reach = measured.length - measured.indexOf(runs[0]);
+  const record = new Map(trackRecord(ws.model.chamber(chamber), reach).map((r) => [r.entry, r]));
   return runs.map((run): RunSeen => {
     const film = filmReading(ws.line, run.readings);
     const light = lightReadings(ws.line, run.readings);
@@ -150,7 +197,7 @@ export function runsSeen(ws: Workspace, chamber: string, last: number): RunSeen[
 }
 
 /** The outlook at settings from an expectation: adds spectrum, current and colour of the mean film. */
-function outlookOf(ws: Workspace, chamber: string, settings: Settings, e: Expectation): Outlook {
+function outlookOf(ws: Workspace, chamber: string, recipe: string, settings: Settings, e: Expectation): Outlook {
   const light = ws.light;
   const lit = sceneOf(light, e.film);
   return {
@@ -158,7 +205,7 @@ function outlookOf(ws: Workspace, chamber: string, settings: Settings, e: Expect
     film: e.film,
     predicted: e.predicted,
     chanceInGoal: e.chanceInGoal,
-    chances: chancesAlone(chamberModel(ws, chamber), settings, { goal: ws.goal(ws.recipe(chamber)), light: ws.light }),
+    chances: chancesAlone(chamberModel(ws, chamber), settings, { goal: ws.goal(recipe), light: ws.light }),
     spectrum: lit?.spectrum ?? null,
     current: lit?.current ?? null,
     colour: lit?.colour ?? null,
@@ -192,21 +239,25 @@ function sceneOf(
   };
 }
 
-/** What to expect at any settings of a chamber (all of them given). Writes nothing. */
-export function whatIf(ws: Workspace, chamber: string, settings: Settings): Outlook {
-  const recipe = ws.recipe(chamber);
+/** What to expect at any settings of a chamber (all of them given), held against the goal of a recipe. Writes nothing. */
+export function whatIf(
+  ws: Workspace,
+  chamber: string,
+  settings: Settings,
+  recipe = currentRecipe(ws, chamber),
+): Outlook {
   const e = expectation(chamberModel(ws, chamber), settings, { line: ws.line, goal: ws.goal(recipe), light: ws.light });
-  return outlookOf(ws, chamber, settings, e);
+  return outlookOf(ws, chamber, recipe, settings, e);
 }
 
-/** One chamber in full. */
-export function chamberView(ws: Workspace, name: string): ChamberView {
+/** One chamber in full, with the recipe named or else the current one. */
+export function chamberView(ws: Workspace, name: string, named?: string): ChamberView {
   const chamber = ws.chamber(name);
-  const recipe = ws.recipe(name);
+  const recipe = named === undefined ? currentRecipe(ws, name) : ws.recipe(name, named);
   const goal = ws.goal(recipe);
   const model = chamberModel(ws, name);
   const before = inForce(ws, name, recipe).settings;
-  const now = whatIf(ws, name, before);
+  const now = whatIf(ws, name, before, recipe);
   const coverage = coverageOf(trackRecord(model));
   const kept = proposalOn(ws.ledger, proposalBasis(ws, name, recipe, null));
   return {
@@ -218,8 +269,8 @@ export function chamberView(ws: Workspace, name: string): ChamberView {
     surface: ws.line.wafer.surface,
     settings: [...chamber.settings.values()].filter((s) => before.has(s.name)),
     now,
-    proposal: kept ? keptProposal(ws, name, kept) : null,
-    runs: runsSeen(ws, name, 20),
+    proposal: kept ? keptProposal(ws, name, recipe, kept) : null,
+    runs: runsSeen(ws, name, 20, recipe),
     openChange: openChange(ws, name, recipe),
     learned: learned(ws, model, before, coverage),
     cannotTell: [...new Set([...now.cannotTell, ...untold(model, leversOf(ws.line)).map((u) => u.sentence)])],
@@ -231,13 +282,13 @@ export function chamberView(ws: Workspace, name: string): ChamberView {
 }
 
 /** A proposal made earlier whose basis still holds, as it was kept in the book. */
-function keptProposal(ws: Workspace, name: string, kept: ProposalRecord): ProposalView {
+function keptProposal(ws: Workspace, name: string, recipe: string, kept: ProposalRecord): ProposalView {
   const { document } = kept.data;
   const list = (key: string) => (Array.isArray(document[key]) ? (document[key] as unknown[]).map(String) : []);
   return {
     proposal: proposalId(kept.seq),
     advice: document["advice"] as ProposalView["advice"],
-    after: whatIf(ws, name, canonicalSettings(ws.line, documentSettings(document, "after"))),
+    after: whatIf(ws, name, canonicalSettings(ws.line, documentSettings(document, "after")), recipe),
     because: list("because"),
     cannotTell: list("cannot_tell"),
     alarms: list("alarms"),
@@ -282,7 +333,7 @@ export function proposalView(ws: Workspace, proposed: Proposed): ProposalView {
   return {
     proposal: proposed.proposal,
     advice: answer.advice,
-    after: outlookOf(ws, chamber, answer.after, answer.ahead),
+    after: outlookOf(ws, chamber, String(proposed.document["recipe"]), answer.after, answer.ahead),
     because: answer.because,
     cannotTell: answer.cannotTell,
     alarms: answer.alarms.map((a) => a.sentence),

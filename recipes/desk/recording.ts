@@ -1,13 +1,14 @@
 /** Recording what happened: runs with their readings, the recipe in force, cleans, services, notes. One entry each. */
 
 import type { Dimension } from "../../engine/index.ts";
-import { parseQuantity, refuse } from "../../engine/index.ts";
+import { nearestWord, parseQuantity, refuse } from "../../engine/index.ts";
 import { gaugeFor } from "../advice/expectation.ts";
 import type { Chamber } from "../line/line.ts";
 import { asQuantities, type GivenSettings, parseSet } from "../line/settings.ts";
 import { outside } from "../line/window.ts";
+import { openChange } from "../record/changes.ts";
 import type { AnyDraft, Reading } from "../record/entries.ts";
-import { recipeInForce } from "../record/versions.ts";
+import { recipeInForce, recipesOf } from "../record/versions.ts";
 import { canonicalSettings } from "./learn.ts";
 import { runSentence } from "./run-sentence.ts";
 import type { Workspace } from "./workspace.ts";
@@ -74,6 +75,20 @@ function measured(what: string, given: Given | undefined, dimension: Dimension, 
 const hintFor = (what: string, value: number) =>
   what === "index" && value > 4 ? "is it the thickness? The order is index, then thickness" : undefined;
 
+/** A bare number could be a fraction as well as per cent, so text needs its unit; and no cell reflects under 0.1 %. */
+function weightedGiven(given: Given | undefined): number | undefined {
+  if (typeof given === "string" && given !== "-" && given !== "" && !/%\s*$/.test(given))
+    refuse("missing-unit", `weighted reflectance ${given} has no unit`, {
+      hint: `write ${given}%, or as a fraction times 100`,
+    });
+  const value = measured("weighted reflectance", given, "percent", "%");
+  if (value !== undefined && value < 0.1)
+    refuse("impossible-value", `weighted reflectance ${value} % is impossible on a coated cell`, {
+      hint: "a fraction instead of per cent?",
+    });
+  return value;
+}
+
 function plainNumber(what: string, text: string): number {
   return parseQuantity(text.trim(), "number").value ?? refuse("not-a-number", `${what} "${text}" is not a number`);
 }
@@ -119,7 +134,7 @@ function readingsOf(ws: Workspace, run: RunGiven): Reading[] {
   const thickness = run.sites
     ? meanOf(run.sites.map((s) => s.thickness_nm))
     : measured("thickness", run.thickness, "length", "nm");
-  const weighted = measured("weighted reflectance", run.weightedReflectance, "percent", "%");
+  const weighted = weightedGiven(run.weightedReflectance);
   const minimum = measured("reflectance minimum", run.reflectanceMinimum, "length", "nm");
   if (run.on !== undefined && run.on !== "polished" && run.on !== "cell")
     refuse("bad-on", `--on is polished or cell, not ${run.on}`);
@@ -173,7 +188,7 @@ export async function recordRun(ws: Workspace, run: RunGiven, how: Stamp & { dry
   if (run.step !== undefined) refuse("many-steps", "recipes of one layer are handled so far: leave --step out");
   if (run.kind !== undefined && run.kind !== "tuning" && run.kind !== "production")
     refuse("bad-kind", `--kind is tuning or production, not ${run.kind}`);
-  const recipe = ws.recipe(chamber.name, run.recipe);
+  const recipe = recipeNamed(ws, chamber.name, run.recipe);
   const atMs = how.at ? Date.parse(how.at) : ws.ports.now();
   const readings = readingsOf(ws, run);
   const { settings, from } = runSettings(ws, chamber, recipe, run.set, atMs);
@@ -205,8 +220,38 @@ export async function recordRun(ws: Workspace, run: RunGiven, how: Stamp & { dry
     ],
     how,
   );
-  written.notices.push(...outsideNow);
+  written.notices.push(...outsideNow, ...unentered(ws, chamber.name, recipe, run.set));
   return one(written, sentence);
+}
+
+/** A change adopted but not entered: whoever typed it in and forgot to say so books runs on the wrong settings. */
+function unentered(ws: Workspace, chamber: string, recipe: string, set: GivenSettings | undefined): string[] {
+  const open = openChange(ws.ledger, chamber, recipe);
+  if (open?.state !== "adopted" || (set && Object.keys(set).length > 0)) return [];
+  return [
+    `${open.id} is adopted but not entered, so this run is booked on the settings before it. If it was typed in already: coatwright enter ${open.id} --at TIME, with a time before the run.`,
+  ];
+}
+
+const namePattern = /^[A-Za-z0-9][A-Za-z0-9._-]{0,63}$/;
+
+/** The recipe a run is booked under; a new name is taken only where the chamber has none yet or the line declares it. */
+function recipeNamed(ws: Workspace, chamber: string, named: string | undefined): string {
+  if (named === undefined) return ws.recipe(chamber);
+  properName(named);
+  const known = recipesOf(ws.ledger, chamber);
+  if (known.length === 0 || known.includes(named) || ws.line.recipes.has(named)) return named;
+  const near = nearestWord(named, known);
+  return refuse("unknown-recipe", `${chamber} never ran a recipe ${named}`, {
+    hint: near
+      ? `did you mean ${near}?`
+      : `it runs ${known.join(", ")}; a new one is stated first: coatwright record recipe --chamber ${chamber} --recipe ${named} --set ...`,
+  });
+}
+
+function properName(name: string): void {
+  if (!namePattern.test(name) || name.includes("..") || ["__proto__", "constructor", "prototype"].includes(name))
+    refuse("bad-name", `"${name}" is not a name for a recipe`, { hint: "letters, digits, . _ -, at most 64" });
 }
 
 /** States what is in force. All settings the model needs must be given, or be in force already. */
@@ -216,6 +261,7 @@ export async function recordRecipe(
   how: Stamp & { dryRun?: boolean },
 ): Promise<Recorded> {
   const chamber = ws.chamber(given.chamber);
+  properName(given.recipe);
   const atMs = how.at ? Date.parse(how.at) : ws.ports.now();
   const set = parseSet(given.set, chamber);
   if (set.size === 0)

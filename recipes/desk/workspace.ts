@@ -118,8 +118,7 @@ export class Workspace {
   learn(ledger: Ledger): LineModel | null {
     const reference = referenceRecipe(this.line, ledger);
     if (!reference) return null;
-    const light = this.line.wafer.surface === "pyramids" ? minimumOf(this.wafer) : null;
-    return new LineModel(chamberLogs(this.line, ledger), learnOptions(this.line, reference, light));
+    return new LineModel(chamberLogs(this.line, ledger), learnOptions(this.line, reference, minimumOf(this.wafer)));
   }
 
   /** The light of the coated cell, with the facet factor as the book has pinned it. */

@@ -52,7 +52,8 @@ export function parseSet(
       const setting = settingOf(chamber, name);
       if (values.has(name)) refuse("set-twice", `${name} is set twice`);
       const value = readValue(setting, written);
-      if (!allowOutside) refuseOutside(setting, value, chamber.name);
+      if (allowOutside) refuseImpossible(setting, value, chamber.name);
+      else refuseOutside(setting, value, chamber.name);
       values.set(name, value);
     } catch (error) {
       if (!(error instanceof Refusal)) throw error;
@@ -141,6 +142,33 @@ function refuseOutside(setting: Setting, value: number, chamber: string): void {
   const { name, low, high } = setting;
   const range = `${shown(setting, low)} to ${shown(setting, high)}`;
   refuse("outside-range", `${name} ${shown(setting, value)} lies outside ${range}, the range of ${chamber}`);
+}
+
+/** How far beyond its declared range a value can still be something a tool ran, as a factor. */
+const farthest = 3;
+
+/**
+ * Refuses what no tool can have run: below zero or zero where the range starts above it, over the controller's full scale,
+ * or over three times beyond the range: a dropped digit or a slip of units. Outside the range but nearer than that is
+ * taken, because what happened must be recorded. Throws `impossible-setting`.
+ */
+export function refuseImpossible(setting: Setting, value: number, chamber: string): void {
+  const { name, low, high, fullScale } = setting;
+  // A temperature's zero means nothing, so a factor does neither: there the range's own width is the measure.
+  const span = high - low;
+  const [least, most] =
+    setting.dimension === "temperature"
+      ? [low - farthest * span, high + farthest * span]
+      : [low > 0 ? low / farthest : 0, Math.min(high * farthest, fullScale ?? Number.POSITIVE_INFINITY)];
+  if (value >= least && value <= Math.max(most, high)) return;
+  const range = `${shown(setting, low)} to ${shown(setting, high)}`;
+  refuse(
+    "impossible-setting",
+    `${name} ${shown(setting, value)} cannot have run on ${chamber}, whose range is ${range}`,
+    {
+      hint: "a digit dropped, or a slip of units?",
+    },
+  );
 }
 
 /** A value of a setting as text in its declared unit: "8.01 kW". More digits than the step has are kept, up to 6. */

@@ -8,6 +8,7 @@ import { type Damage, listDamage } from "./damage.ts";
 import type { AnyEntry } from "./entries.ts";
 import { errorCode, fileRefusal, inFolder } from "./file-trouble.ts";
 import { decodeHead, type Head, NO_HASH, readLine } from "./format.ts";
+import { plainRunLine } from "./plain-run.ts";
 
 export const BOOK = "book.jsonl";
 export const HEAD = "book.head";
@@ -75,8 +76,11 @@ export function readEntries(
   const named = typeof head === "object" ? head : null;
   const batch: Batch = { seq: -1, last: -1, place: from };
   let at = 0;
-  for (let end = bytes.indexOf(0x0a, at); end >= 0; end = bytes.indexOf(0x0a, at)) {
-    if (!take(reading, batch, bytes.subarray(at, end), end + 1 - at)) break;
+  const buffer = Buffer.from(bytes.buffer, bytes.byteOffset, bytes.byteLength);
+  for (let end = buffer.indexOf(0x0a, at); end >= 0; end = buffer.indexOf(0x0a, at)) {
+    const run = plainRunLine(buffer, at, end, reading.place);
+    if (run) accept(reading, run, end + 1 - at);
+    else if (!take(reading, batch, bytes.subarray(at, end), end + 1 - at)) break;
     at = end + 1;
   }
   if (at < bytes.length) leftOver(reading, batch, bytes, at, from, named);
@@ -116,9 +120,16 @@ function take(reading: Reading, batch: Batch, line: Uint8Array, size: number): b
     batch.last = entry.seq + entry.data.entries;
     batch.place = place;
   }
-  reading.entries.push(entry);
-  reading.place = { offset: place.offset + size, seq: place.seq + 1, prev: entry.hash };
+  accept(reading, entry, size);
   return true;
+}
+
+/** Counts an entry that has been found to be the next one. */
+function accept(reading: Reading, entry: AnyEntry, size: number): void {
+  reading.entries.push(entry);
+  const { offset, seq } = reading.place;
+  // A fresh object: a batch holds on to the place where it began.
+  reading.place = { offset: offset + size, seq: seq + 1, prev: entry.hash };
 }
 
 /** Bytes from `at` on did not read as the next entry: an interrupted append, or damage. */

@@ -111,6 +111,40 @@ describe("a bad reading", () => {
   });
 });
 
+describe("a slip of units or settings", () => {
+  it("moves nothing, however far off the reading is", () => {
+    for (const nm of [8.8, 188, 880, 1000, 1e5]) {
+      const line = virtualLine("slip", [{ name: "A1", runs: 30 }], { cycle: 100 });
+      const chamber = line.chambers[0];
+      const before = filmMoments(line.model().chamber("A1").law(line.world.start));
+      runAndLog(chamber, line.world.start);
+      const last = chamber.events.at(-1);
+      if (last?.kind !== "run" || !last.film) throw new Error("a run was expected");
+      last.film = { ...last.film, thicknessNm: nm };
+      const after = filmMoments(line.model().chamber("A1").law(line.world.start));
+      expect(Math.abs(Math.exp(after.lnThickness) - Math.exp(before.lnThickness))).toBeLessThan(0.3);
+    }
+  });
+
+  it("in the settings leaves that run out and the line at work", () => {
+    const line = virtualLine(
+      "typo",
+      [
+        { name: "A1", runs: 20 },
+        { name: "A2", runs: 20 },
+      ],
+      { cycle: 100 },
+    );
+    const first = line.chambers[0].events[5];
+    if (first.kind !== "run") throw new Error("a run was expected");
+    line.chambers[0].events[5] = { ...first, settings: new Map(first.settings).set("silane", -5) };
+    const model = line.model();
+    expect(model.chamber("A1").log.unusable).toEqual([{ entry: first.entry, missing: "silane" }]);
+    for (const name of ["A1", "A2"])
+      expect(filmMoments(model.chamber(name).law(line.world.start)).index).toBeGreaterThan(1.9);
+  });
+});
+
 describe("a leak from a clean on", () => {
   it("is named after two readings; an ordinary clean is not", () => {
     let named = 0;

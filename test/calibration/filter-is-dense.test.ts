@@ -3,7 +3,7 @@
  * conditioned in one go (textbook conditioning, solved with the general-purpose library ml-matrix). Tolerance 1e-10
  * relative: both routes are backward stable and the systems are small, so more than that means a wrong formula.
  */
-import { CholeskyDecomposition, Matrix, solve } from "ml-matrix";
+import { CholeskyDecomposition, determinant, inverse, Matrix, solve } from "ml-matrix";
 import { describe, expect, it } from "vitest";
 import { observe } from "../../calibration/hypotheses.ts";
 import { hypothesisWeights, scatter } from "../../calibration/priors.ts";
@@ -17,7 +17,7 @@ import {
   type State,
   updateScalar,
 } from "../../calibration/square-root.ts";
-import { random } from "../../engine/index.ts";
+import { logGamma, random } from "../../engine/index.ts";
 
 const rng = random("filter-is-dense");
 const tolerance = 1e-10;
@@ -114,7 +114,7 @@ describe("the square-root filter equals the dense Gaussian answer", () => {
   });
 });
 
-describe("merging three readings of a run keeps the mixture's mean and covariance", () => {
+describe("merging the three hypotheses of a run keeps the mixture's mean and covariance", () => {
   for (const outputs of [[0, 1], [0], [1]] as (0 | 1)[][]) {
     it(`for output ${outputs.join(" and ")}, beside the mixture formed densely`, () => {
       const n = 7;
@@ -142,7 +142,19 @@ describe("merging three readings of a run keeps the mixture's mean and covarianc
           if (hyp === 1) R.set(i, i, R.get(i, i) + scatter.badMeasurement[o] ** 2);
         });
         if (hyp === 2) for (const o of [0, 1]) cov.set(n - 2 + o, n - 2 + o, cov.get(n - 2 + o, n - 2 + o) + step[o]);
-        return condition({ mean: before.mean, cov }, H, R, Matrix.columnVector(values));
+        const posterior = condition({ mean: before.mean, cov }, H, R, Matrix.columnVector(values));
+        if (hyp !== 1) return posterior;
+        // A bad reading teaches nothing, and its density is Student's t with 4 degrees of freedom (its textbook form).
+        const S = H.mmul(cov).mmul(H.transpose()).add(R);
+        const e = Matrix.sub(Matrix.columnVector(values), H.mmul(before.mean));
+        const q = e.transpose().mmul(inverse(S)).mmul(e).get(0, 0);
+        const logT =
+          logGamma((4 + m) / 2) -
+          logGamma(2) -
+          0.5 * m * Math.log(4 * Math.PI) -
+          0.5 * Math.log(determinant(S)) -
+          0.5 * (4 + m) * Math.log(1 + q / 4);
+        return { mean: before.mean, cov: before.cov, logN: logT };
       });
       const weights = parts.map((p, h) => hypothesisWeights[h] * Math.exp(p.logN));
       const total = weights.reduce((a, b) => a + b, 0);

@@ -91,7 +91,7 @@ describe.skipIf(!canScript)("the screens in a real terminal", () => {
       ["p", /kept as p-/],
       ["a", /why|reason/i],
       ["thin since the clean\r", /type in at A2/],
-      ["e", /y or n/],
+      ["e", /y, d or n/],
       ["y", /in force/],
       ["l", /index/],
       ["2.057\r88.2\r\r", /recorded #/],

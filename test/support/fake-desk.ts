@@ -205,10 +205,13 @@ export class FakeDesk implements ScreenDesk {
     return {
       chamber: name,
       recipe: "blue",
+      goal,
       attention,
+      alarm: null,
       sentence: sentences[attention],
       chanceInGoal: chance,
       depositionsSinceClean: chamber.since,
+      cleaned: true,
       runs: chamber.runs.length,
       lastRuns: chamber.runs.slice(-40),
       awaitingReadings: name === "B1" ? 2 : 0,
@@ -298,12 +301,13 @@ export class FakeDesk implements ScreenDesk {
     return { change, sheet: [`at ${name}:`, "silane   812 -> 835 sccm", "time     560 -> 572 s"] };
   }
 
-  async enter(change: string): Promise<string> {
-    this.write(`enter ${change}`);
+  async enter(change: string, readBack: ReadonlyMap<string, number> = new Map()): Promise<string> {
+    const read = [...readBack].map(([name, value]) => ` ${name}=${value}`).join("");
+    this.write(`enter ${change}${read}`);
     const chamber = this.holder(change);
     const open = chamber.change as OpenChange;
     chamber.change = { ...open, state: "entered" };
-    chamber.now = open.after;
+    chamber.now = new Map([...open.after, ...readBack]);
     chamber.proposal = null;
     return `${change} is in force from now`;
   }
@@ -327,7 +331,11 @@ export class FakeDesk implements ScreenDesk {
   async close(change: string): Promise<string[]> {
     this.write(`close ${change}`);
     this.holder(change).change = null;
-    return ["expected index 2.061, got 2.058: as promised", "expected 88.1 nm, got 88.4 nm: as promised"];
+    return [
+      "as expected; 1 of 1 measured run in goal.",
+      "expected index 2.061, got 2.058: as promised",
+      "expected 88.1 nm, got 88.4 nm: as promised",
+    ];
   }
 
   async undo(change: string, reason: string): Promise<string> {

@@ -6,8 +6,9 @@ import { type Look, signs } from "../../palette.ts";
 import { withHalf } from "../../text/numbers.ts";
 import { type Row, words } from "../../text/rows.ts";
 import { cells, left, wrap } from "../../text/width.ts";
+import { enteringQuestion, settingsToRead, valueText } from "../reduce-entering.ts";
 import { checkField, expectedOf, fieldRules, type RunForm } from "../run-form.ts";
-import type { Layer, State } from "../state.ts";
+import { type Layer, openChangeOf, type State } from "../state.ts";
 import type { TextField } from "../text-field.ts";
 
 /** Rows of the question on top, or null when the layer on top is a page and not a question. */
@@ -15,7 +16,19 @@ export function dialogRows(state: State, layer: Layer, width: number, look: Look
   const rule: Row = [{ text: signs(look).rule.repeat(width), tone: "quiet" }];
   switch (layer.kind) {
     case "confirm":
-      return [rule, [{ ...words(layer.question, look), tone: "strong" }, { text: "  y or n" }]];
+      return [
+        rule,
+        ...wrap(words(`${layer.question}  y or n`, look).text, width).map((text): Row => [{ text, tone: "strong" }]),
+      ];
+    case "entering":
+      return [
+        rule,
+        ...wrap(words(`${enteringQuestion(state, layer)}  y, d or n`, look).text, width).map(
+          (text): Row => [{ text, tone: "strong" }],
+        ),
+      ];
+    case "read-back":
+      return [rule, ...readBackRows(state, layer, width, look)];
     case "reason":
       return [
         rule,
@@ -24,9 +37,13 @@ export function dialogRows(state: State, layer: Layer, width: number, look: Look
         fieldRow("reason ", layer.field, width, look),
       ];
     case "name":
-      return [rule, [{ ...words(layer.question, look), tone: "alarm" }], fieldRow("name ", layer.field, width, look)];
+      return [
+        rule,
+        ...wrap(words(layer.question, look).text, width).map((text): Row => [{ text, tone: "alarm" }]),
+        fieldRow("name ", layer.field, width, look),
+      ];
     case "form":
-      return [rule, ...formRows(state, layer.chamber, layer.form, look)];
+      return [rule, ...formRows(state, layer.chamber, layer.form, width, look)];
     default:
       return null;
   }
@@ -44,32 +61,61 @@ export function fieldRow(label: string, field: TextField, width: number, look: L
   return [{ text: label }, { text: before }, { text: under, tone: "chosen" }, { text: after }];
 }
 
-function formRows(state: State, name: string, form: RunForm, look: Look): Row[] {
+/** Which setting, what was adopted, and what it reads. */
+function readBackRows(state: State, layer: Extract<Layer, { kind: "read-back" }>, width: number, look: Look): Row[] {
+  const settings = settingsToRead(state, layer);
+  const setting = settings[layer.at];
+  if (setting === undefined) return [[{ text: "reading the chamber..." }]];
+  const adopted = valueText(setting, layer.change.after.get(setting.name));
+  return [
+    [{ ...words(`${layer.change.change}: which value reads back differently?`, look), tone: "strong" }],
+    [words(`adopted  ${setting.name} ${adopted}   (${layer.at + 1} of ${settings.length}: up, down)`, look)],
+    fieldRow(words(`reads    ${setting.name}, ${setting.unit}: `, look).text, layer.field, width, look),
+  ];
+}
+
+function formRows(state: State, name: string, form: RunForm, width: number, look: Look): Row[] {
   const view = state.chamber !== null && state.chamber.view.chamber === name ? state.chamber.view : null;
   const expected: readonly (Interval | null)[] = view === null ? [null, null, null] : expectedOf(view);
   const rows: Row[] = [
     [
       { ...words(`log a run of ${name}`, look), tone: "strong" },
-      words(`   settings: those in force${view === null ? "" : ` (${view.recipe})`}; empty: not measured`, look),
+      words(
+        width < 70
+          ? ` at the settings in force${view === null ? "" : ` (${view.recipe})`}`
+          : `   settings: those in force${view === null ? "" : ` (${view.recipe})`}; empty: not measured`,
+        look,
+      ),
     ],
   ];
   const below: Row[] = [];
+  // Where what is expected of a field, or remarked on it, begins.
+  const noteAt = width < 70 ? 38 : 42;
   fieldRules.forEach((rule, i) => {
     const field = form.fields[i];
     const check = checkField(i, field.text, expected[i]);
     const active = form.at === i;
     const hope = expected[i] === null ? "" : `expected ${withHalf(expected[i], rule.decimals)}`;
-    const note = check.problem === null ? (check.remark ?? hope) : active ? "! see below" : "! cannot be";
-    if (active && check.problem !== null) below.push([{ ...words(`! ${check.problem}`, look), tone: "watch" }]);
+    const remark = check.remark ?? hope;
+    const fits = cells(words(remark, look).text) <= width - noteAt;
+    const note = check.problem === null ? (fits ? remark : "see below") : active ? "! see below" : "! cannot be";
+    const detail = check.problem === null ? (fits ? null : remark) : `! ${check.problem}`;
+    if (active && detail !== null)
+      for (const text of wrap(words(detail, look).text, width)) below.push([{ text, tone: "watch" }]);
     const label = `${active ? signs(look).pointer : " "} ${left(`${rule.name}${rule.unit === "" ? "" : `, ${rule.unit}`}`, 25)}`;
-    const shown = active ? fieldRow(label, field, 42, look) : [{ text: label }, words(field.text, look)];
+    const shown = active ? fieldRow(label, field, noteAt, look) : [{ text: label }, words(field.text, look)];
     const used = shown.reduce((sum, segment) => sum + cells(segment.text), 0);
     rows.push([
       ...shown,
-      { text: " ".repeat(Math.max(1, 42 - used)) },
+      { text: " ".repeat(Math.max(1, noteAt - used)) },
       { ...words(note, look), tone: check.problem === null ? "plain" : "watch" },
     ]);
   });
+  const change = openChangeOf(state, name);
+  if (change?.state === "adopted") {
+    const booked = `${change.change} is adopted but not entered: this run is booked on the settings before it`;
+    for (const text of wrap(words(booked, look).text, width)) rows.push([{ text, tone: "watch" }]);
+  }
   // Always one row for what is wrong, so that the form does not jump while one types.
-  return [...rows, below[0] ?? []];
+  return [...rows, ...(below.length > 0 ? below : [[]])];
 }

@@ -10,14 +10,24 @@ import { left } from "../../text/width.ts";
 import type { ChamberState } from "../state.ts";
 import { draftName } from "./settings-table.ts";
 
-const labelWidth = 13;
+const labels = {
+  wide: ["index", "thickness nm", "weighted R %", "R minimum nm", "all in goal", "lost mA/cm2", "colour"],
+  narrow: ["index", "thick nm", "R %", "min nm", "in goal", "lost mA", "colour"],
+};
 
-/** Eight rows, one more where two colours need it, and one for each sentence about the window. */
+/**
+ * The expectation in at most the paper's height: what is judged always, then whether it is outside the window, then losses and
+ * colour as far as there is room.
+ */
 export function expectedRows(chamber: ChamberState, paper: Paper): Row[] {
   const { look, width } = paper;
   const { now, goal } = chamber.view;
   const { after } = chamber;
   const withGoal = width >= 54;
+  // Two columns of "2.049 ±0.015" (longer in ASCII) with a blank between them.
+  const narrow = width < 13 + 2 * 14;
+  const labelWidth = narrow ? 9 : 13;
+  const names = narrow ? labels.narrow : labels.wide;
   const column = Math.floor((width - labelWidth - (withGoal ? 14 : 0)) / 2);
   const sign = signs(look);
   const name = draftName(chamber);
@@ -39,7 +49,7 @@ export function expectedRows(chamber: ChamberState, paper: Paper): Row[] {
       const text = withHalf(interval, decimals);
       return [
         {
-          text: look.ascii ? text.replace(" ±", "+/-") : text,
+          text: look.ascii ? text.replace(" ±", narrow ? "~" : "+/-") : text,
           tone: within === null ? "plain" : within ? "good" : "watch",
         },
       ];
@@ -57,17 +67,17 @@ export function expectedRows(chamber: ChamberState, paper: Paper): Row[] {
   const rows: Row[] = [
     header,
     line(
-      "index",
+      names[0],
       value((o) => o.predicted.index, 3, near(index)),
       toleranceText(index, 2),
     ),
     line(
-      "thickness nm",
+      names[1],
       value((o) => o.predicted.thickness_nm, 1, near(thicknessNm)),
       toleranceText(thicknessNm, 0),
     ),
     line(
-      "weighted R %",
+      names[2],
       value(
         (o) => o.predicted.weighted_reflectance_percent,
         2,
@@ -76,22 +86,23 @@ export function expectedRows(chamber: ChamberState, paper: Paper): Row[] {
       weightedReflectancePercent === undefined ? "" : `at most ${weightedReflectancePercent.atMost}`,
     ),
     line(
-      "R minimum nm",
+      names[3],
       value((o) => o.predicted.reflectance_minimum_nm, 0, near(reflectanceMinimumNm)),
       toleranceText(reflectanceMinimumNm, 0),
     ),
     line(
-      "all in goal",
+      names[4],
       [now, after].map((o) => chanceCell(o)),
     ),
-    line(
-      "lost mA/cm2",
-      [now, after].map((o): Segment[] => [{ text: lossText(o) }]),
-    ),
-    ...colourRows(now, after, column, look),
   ];
-  for (const sentence of (after ?? now).outsideWindow)
-    rows.push([{ text: "OUTSIDE ", tone: "alarm" }, words(sentence, look)]);
+  // Which limit, the line under the screen says in full.
+  if ((after ?? now).outsideWindow.length > 0) rows.push([{ text: "OUTSIDE the qualified window", tone: "alarm" }]);
+  const losses = line(
+    names[5],
+    [now, after].map((o): Segment[] => [{ text: lossText(o) }]),
+  );
+  const colours = colourRows(now, after, labelWidth, column, look);
+  for (const more of [[losses], colours]) if (rows.length + more.length <= paper.height) rows.push(...more);
   return rows;
 }
 
@@ -110,7 +121,7 @@ function lossText(outlook: Outlook | null): string {
 }
 
 /** Side by side where the words fit their columns, else one under the other, each with its sign. */
-function colourRows(now: Outlook, after: Outlook | null, column: number, look: Look): Row[] {
+function colourRows(now: Outlook, after: Outlook | null, labelWidth: number, column: number, look: Look): Row[] {
   const sign = signs(look);
   const patch = (outlook: Outlook): Segment[] =>
     outlook.colour !== null && (look.colour === "true" || look.colour === "256")

@@ -3,7 +3,7 @@
  */
 import { type Command, footerCommands, keyText } from "../../keys.ts";
 import { type Look, signs } from "../../palette.ts";
-import { goalInBrief } from "../../text/line-words.ts";
+import { goalToFit } from "../../text/line-words.ts";
 import { chanceText, chanceWord } from "../../text/numbers.ts";
 import { type Row, rowCells, type Segment, toWidth, words } from "../../text/rows.ts";
 import { cells, wrap } from "../../text/width.ts";
@@ -24,12 +24,12 @@ export function headRows(state: State, width: number, look: Look): Row[] {
       ? ""
       : `${overview.demo ? "demo line, " : ""}${overview.entries} entries`;
   const source = inChamber ? chamber.view : overview;
-  const whole = source === null ? "" : `goal ${source.goalText}`;
-  const goal = source !== null && cells(whole) > width ? `goal ${goalInBrief(source.goal)}` : whole;
+  const measure = (text: string) => cells(words(text, look).text);
+  const goal = source === null ? "" : `goal ${goalToFit(source.goal, source.goalText, width - 5, measure)}`;
   const light = inChamber ? chamber.view.lightText : (overview?.lightText ?? "");
   return [
     spread([{ ...words(path, look), tone: "strong" }], [words(side, look)], width),
-    spread([words(goal, look)], cells(goal) + cells(light) + 3 <= width ? [words(light, look)] : [], width),
+    spread([words(goal, look)], measure(goal) + measure(light) + 3 <= width ? [words(light, look)] : [], width),
     [{ text: signs(look).rule.repeat(width), tone: "quiet" }],
   ];
 }
@@ -54,21 +54,21 @@ export function messageRows(state: State, hint: string, width: number, look: Loo
       kept[longestMessage - 1] = `${kept[longestMessage - 1].slice(0, width - 16)} (all of it: m)`;
     return kept.map((line) => [{ text: line, tone }]);
   }
-  if (state.busy !== null) return [[words(`${state.busy}, please wait`, look)]];
-  return [[words(hint, look)]];
+  const lines = wrap(words(state.busy === null ? hint : `${state.busy}, please wait`, look).text, width);
+  return lines.slice(0, longestMessage).map((text): Row => [{ text }]);
 }
 
-/** The keys of a place, as many as fit; those that cannot be pressed now stand in brackets. */
+/** The keys that can be pressed now, as many as fit; the help page has the others, each with why not. */
 export function footRow(state: State, width: number, look: Look): Row {
   const place = placeOf(state);
-  const shown = fitting(footerCommands(place), width);
+  const shown = fitting(
+    footerCommands(place).filter((command) => whyNot(state, command.id) === null),
+    width,
+  );
   const row: Segment[] = [];
   for (const command of shown) {
     if (row.length > 0) row.push({ text: "  " });
-    const reason = whyNot(state, command.id);
-    const key = keyText(command.keys[0]);
-    if (reason === null) row.push({ text: key, tone: "strong" }, { text: ` ${command.label}` });
-    else row.push({ text: `(${key} ${command.label})`, tone: "quiet" });
+    row.push({ text: keyText(command.keys[0]), tone: "strong" }, { text: ` ${command.label}` });
   }
   return toWidth(row, width, look.ascii ? "~" : "…");
 }
@@ -76,7 +76,7 @@ export function footRow(state: State, width: number, look: Look): Row {
 /** Leaves out from the middle of the order until the rest fits; ways out and help always stay. */
 function fitting(all: readonly Command[], width: number): readonly Command[] {
   const needed = (list: readonly Command[]) =>
-    list.reduce((sum, command) => sum + cells(keyText(command.keys[0])) + command.label.length + 5, 0);
+    list.reduce((sum, command) => sum + cells(keyText(command.keys[0])) + command.label.length + 3, 0);
   const kept = [...all];
   const stays = (command: Command) => command.id === "back" || command.id === "help" || command.id === "accept";
   while (needed(kept) > width + 2 || kept.length > 9) {

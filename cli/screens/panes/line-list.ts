@@ -2,26 +2,26 @@
  * The line screen's list: each chamber with what it needs, in words, and its last runs against the goal. The one that
  * needs attention first stands first; the chosen one is always in view, drawn in full even when room is short.
  */
-import type { ChamberRow, Goal } from "../../../recipes/index.ts";
+import type { ChamberRow } from "../../../recipes/index.ts";
 import { keyText } from "../../keys.ts";
 import { type Look, signs } from "../../palette.ts";
 import { type LanePlot, laneRows, offGoal } from "../../plot/lanes.ts";
 import { changeInWords, counted, due, sentenceInBrief } from "../../text/line-words.ts";
 import { chanceText, chanceWord, fixed } from "../../text/numbers.ts";
 import { beside, type Paper, type Row, words } from "../../text/rows.ts";
-import { cut } from "../../text/width.ts";
+import { cells, cut } from "../../text/width.ts";
 import { spread } from "./frame.ts";
 
 /** Rows of a chamber drawn in full, with the blank after it; and in brief. */
 const fullHeight = 6;
 const briefHeight = 2;
 
-export function lineListRows(chambers: readonly ChamberRow[], goal: Goal, chosen: string | null, paper: Paper): Row[] {
+export function lineListRows(chambers: readonly ChamberRow[], chosen: string | null, paper: Paper): Row[] {
   if (chambers.length === 0) return [[{ text: "no chamber matches" }]];
   const allFull = chambers.length * fullHeight - 1 <= paper.height;
   const blocks = chambers.map((row) => {
     const isChosen = row.chamber === chosen;
-    return allFull || isChosen ? fullBlock(row, goal, isChosen, paper) : briefBlock(row, isChosen, paper);
+    return allFull || isChosen ? fullBlock(row, isChosen, paper) : briefBlock(row, isChosen, paper);
   });
   return windowOf(
     blocks,
@@ -43,15 +43,25 @@ function firstRow(row: ChamberRow, isChosen: boolean, paper: Paper): Row {
   const { look, width } = paper;
   const next = due(row);
   const key = next.key === "" ? "" : ` (${keyText(next.key)})`;
-  const chance = `in goal ${chanceText(row.chanceInGoal)}, ${chanceWord(row.chanceInGoal)}`;
+  const chance = `in goal ${chanceText(row.chanceInGoal)}`;
+  const name = words(`${row.chamber} ${row.recipe}`.padEnd(14), look).text;
+  const head = next.text.slice(0, next.text.indexOf(":"));
+  // Short of room, the word for the chance goes first, then what stands behind the colon.
+  const forms = [
+    [`${next.text}${key}`, `${chance}, ${chanceWord(row.chanceInGoal)}`],
+    [`${next.text}${key}`, chance],
+    [`${head}${key}`, chance],
+  ];
+  const room = width - cells(name) - 5;
+  const [call, side] = forms.find(([a, b]) => cells(a) + cells(b) <= room) ?? forms[2];
   return spread(
     [
       { text: isChosen ? `${signs(look).pointer} ` : "  ", tone: "strong" },
-      { ...words(`${row.chamber} ${row.recipe}`.padEnd(14), look), tone: isChosen ? "chosen" : "strong" },
+      { text: name, tone: isChosen ? "chosen" : "strong" },
       { text: " " },
-      { ...words(`${next.text}${key}`, look), tone: next.tone },
+      { ...words(call, look), tone: next.tone },
     ],
-    [words(chance, look)],
+    [words(side, look)],
     width,
   );
 }
@@ -63,11 +73,11 @@ function briefBlock(row: ChamberRow, isChosen: boolean, paper: Paper): Row[] {
   ].slice(0, briefHeight);
 }
 
-function fullBlock(row: ChamberRow, goal: Goal, isChosen: boolean, paper: Paper): Row[] {
+function fullBlock(row: ChamberRow, isChosen: boolean, paper: Paper): Row[] {
   const { look, width } = paper;
   const extra = [
     counted(row.runs, "run"),
-    `${counted(row.depositionsSinceClean, "deposition")} since clean`,
+    ...(row.cleaned ? [`${counted(row.depositionsSinceClean, "deposition")} since clean`] : []),
     ...(row.awaitingReadings > 0 ? [`${row.awaitingReadings} awaiting readings`] : []),
     ...(row.openChange === null ? [] : [changeInWords(row.openChange)]),
   ].join(", ");
@@ -79,8 +89,8 @@ function fullBlock(row: ChamberRow, goal: Goal, isChosen: boolean, paper: Paper)
       ? spread([{ text: `    ${sentence}` }], [words(extra, look)], width)
       : [{ text: cut(`    ${sentence}`, width, mark) }];
   const half = Math.floor((width - 4) / 2);
-  const index = lanes("index", "", 3, goal.index, row, (run) => run.index, half - 2, look);
-  const thickness = lanes("thickness", "nm", 1, goal.thicknessNm, row, (run) => run.thicknessNm, half, look);
+  const index = lanes("index", "", 3, row.goal.index, row, (run) => run.index, half - 2, look);
+  const thickness = lanes("thickness", "nm", 1, row.goal.thicknessNm, row, (run) => run.thicknessNm, half, look);
   const trend = beside(index, half, thickness).map((one): Row => [{ text: "    " }, ...one]);
   return [firstRow(row, isChosen, paper), second, ...trend, []];
 }

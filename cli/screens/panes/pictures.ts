@@ -52,14 +52,16 @@ export function planePlotOf(chamber: ChamberState, paper: Paper): PlanePlot {
 function planePane(chamber: ChamberState, paper: Paper): Row[] {
   const plot = planePlotOf(chamber, paper);
   const sign = signs(paper.look);
-  const letters = plot.runs.length === 0 ? "no runs" : `runs a-${String.fromCharCode(96 + plot.runs.length)}`;
+  const last = String.fromCharCode(96 + plot.runs.length);
+  const tight = paper.width < 34;
+  const letters = plot.runs.length === 0 ? "no runs" : `${tight ? "" : "runs "}a-${last}`;
   const title: Row = [
-    { text: "film  ", tone: "strong" },
+    { text: tight ? "" : "film  ", tone: "strong" },
     { text: `${sign.now} now`, tone: "now" },
-    { text: "  " },
+    { text: tight ? " " : "  " },
     ...(chamber.after === null
       ? []
-      : [{ text: `${sign.after} ${draftName(chamber)}`, tone: "after" as Tone }, { text: "  " }]),
+      : [{ text: `${sign.after} ${draftName(chamber)}`, tone: "after" as Tone }, { text: tight ? " " : "  " }]),
     { text: letters },
   ];
   return [title, ...planeRows(plot)];
@@ -70,10 +72,10 @@ function spectrumPane(chamber: ChamberState, paper: Paper): Row[] {
   const sign = signs(paper.look);
   const minimum = view.goal.reflectanceMinimumNm;
   const title: Row = [
-    { text: "reflectance ", tone: "strong" },
+    { text: paper.width < 36 ? "" : "reflectance ", tone: "strong" },
     { text: `${sign.now} now `, tone: "now" },
     ...(after === null ? [] : [{ text: `${sign.after} ${draftName(chamber)} `, tone: "after" as Tone }]),
-    { text: minimum === undefined ? "" : `${paper.look.ascii ? "=" : "━"} goal` },
+    { text: minimum === undefined ? "" : `${paper.look.ascii ? "=" : "━"}${paper.width < 36 ? "" : " "}goal` },
   ];
   const plot = {
     width: paper.width,
@@ -111,5 +113,9 @@ function learnedRows(view: ChamberView, paper: Paper): Row[] {
     { title: "cannot tell", lines: view.cannotTell },
   ];
   const rows = sentences(parts, paper);
-  return rows.length === 0 ? [[{ text: "nothing is learned yet: log runs" }]] : rows;
+  if (rows.length === 0) return [[{ text: "nothing is learned yet: log runs" }]];
+  if (rows.length <= paper.height) return rows;
+  const room = Math.max(1, paper.height - 1);
+  const more = `${signs(paper.look).low} ${rows.length - room} more lines: i`;
+  return [...rows.slice(0, room), [{ text: more, tone: "strong" }]];
 }

@@ -18,7 +18,7 @@ export function proposalRows(name: string, proposal: ProposalView, chamber: Cham
   const watch = proposal.advice === "fault" || proposal.advice === "out_of_reach";
   const rows: Row[] = [
     [
-      { ...words(`${name}: ${adviceInWords(proposal.advice)}`, look), tone: watch ? "alarm" : "strong" },
+      { ...words(`${name}: ${adviceInWords(proposal)}`, look), tone: watch ? "alarm" : "strong" },
       words(`   ${id}${proposal.done ? ", tuning is finished" : ""}`, look),
     ],
     [],

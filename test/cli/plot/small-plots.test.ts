@@ -50,7 +50,7 @@ describe("lanes", () => {
   test("say themselves in a sentence", () => {
     const plot = { width: 10, look, goal, points: [point(88, 1), point(84.1, 2)] };
     expect(laneSummary("thickness", "nm", 1, plot)).toBe(
-      "thickness 84.1 nm, 3.9 nm low; 1 of 2 runs outside the goal.",
+      "thickness last read 84.1 nm, 3.9 nm low; 1 of 2 runs outside the goal.",
     );
     expect(laneSummary("thickness", "nm", 1, { ...plot, points: [] })).toBe("thickness: not measured yet.");
     expect(offGoal(90, goal, "nm", 1)).toBe("in goal");

@@ -23,7 +23,7 @@ describe("keys one at a time", () => {
     ["two escapes are two keys", ["\u001b\u001b"], ["escape", "escape"]],
     ["a paste is one event", ["\u001b[200~hello q\u001b[201~x"], ["paste:hello q", "x"]],
     ["a paste in pieces, its end mark split, is one event", ["\u001b[200~ab", "c\u001b[2", "01~"], ["paste:abc"]],
-    ["a newline in a paste is a blank and no enter", ["\u001b[200~yes\r\nno\r\u001b[201~"], ["paste:yes no"]],
+    ["a paste of several lines is its first, and no enter", ["\u001b[200~\nyes\r\nno\r\u001b[201~"], ["paste:yes"]],
     ["controls in a paste vanish", ["\u001b[200~a\u0007\u001b[31mb\u001b[201~"], ["paste:a[31mb"]],
     ["focus reports are no keys", ["\u001b[I\u001b[Oa"], ["a"]],
     ["mouse reports are no keys", ["\u001b[<0;10;5M\u001b[<0;10;5ma"], ["a"]],

@@ -160,13 +160,19 @@ describe("the chamber screen", () => {
   test("says when a what-if leaves the qualified window", () => {
     const chamber = open(80, 24);
     const draft = new Map(chamber.chamber?.draft).set("silane", 1150);
-    const state = press(chamber, ..."1150", "enter", {
-      kind: "looked",
-      chamber: "A2",
-      settings: draft,
-      outlook: fakeOutlook(draft),
-    });
-    expect(screenText(state, mono).join("\n")).toContain("OUTSIDE silane");
+    for (const [columns, rows] of sizes) {
+      const sized = press(chamber, { kind: "size", columns, rows });
+      const state = press(sized, ..."1150", "enter", {
+        kind: "looked",
+        chamber: "A2",
+        settings: draft,
+        outlook: fakeOutlook(draft),
+      });
+      const text = screenText(state, mono).join("\n");
+      expect(text).toContain("OUTSIDE the qualified window");
+      // which limit, all of it, on more lines where it is narrow
+      expect(text.replace(/\s+/g, " ")).toContain("OUTSIDE: silane 1101 sccm is above the window's 1100 sccm");
+    }
   });
 
   test("shows an alarm in words", () => {
@@ -233,6 +239,76 @@ describe("the chamber screen", () => {
     });
     expect(screenText(state, mono).join("\n")).not.toMatch(/[\u0000-\u0009\u000b-\u001f\u007f-\u009f]/);
   });
+});
+
+describe("at 60 by 18 nothing that matters is cut", () => {
+  const asked = press(open(60, 18), { kind: "proposed", chamber: "A2", proposal }, "q");
+  const screens = { line: start(60, 18), chamber: open(60, 18), asked };
+
+  test.each([mono, ascii])("neither goal nor hint, state nor chance (%o)", (look) => {
+    for (const [name, state] of Object.entries(screens)) {
+      const lines = screenText(state, look);
+      expect(lines.join("\n"), name).not.toMatch(look.ascii ? /[a-z0-9]~( |$)/m : /…/);
+      expect(lines[1], name).toMatch(/2\.06.*88.*2\.5.*600.*15 nm$/);
+    }
+    expect(screenText(screens.line, look).join("\n")).toContain("in goal 11 %");
+  });
+
+  test("units and intervals stand beside both columns", () => {
+    const text = screenText(asked, mono).join("\n");
+    expect(text).toMatch(/silane +812 +835 sccm/);
+    expect(text).toMatch(/thick nm 84\.6 ±1\.6 +87\.\d ±1\.6|thick nm 84\.6 ±1\.6 +88\.\d ±1\.6/);
+    expect(text).toMatch(/index +2\.043 ±0\.013 +2\.0\d\d ±0\.013/);
+  });
+
+  test("an alarm is on the screen even then", () => {
+    expect(screenText(open(60, 18, "B1"), mono).join("\n")).toContain("ALARM");
+  });
+});
+
+test.each(sizes)("what was learned says at %i by %i when there is more of it, and i shows all", (columns, rows) => {
+  const view = desk.chamber("A2");
+  const learned = Array.from({ length: 60 }, (_, i) => `fact ${i} of the chamber, said at some length`);
+  const many = press(open(columns, rows), { kind: "chamber", view: { ...view, learned }, open: true });
+  if (many.chamber !== null) many.chamber.picture = "learned";
+  expect(screenText(many, mono).join("\n")).toMatch(/more lines: i/);
+  expect(screenText(press(many, "i", "end"), mono).join("\n")).toContain("ammonia hardly moved");
+});
+
+test("runs at 80 by 24 are whole, and the clean between them is drawn", () => {
+  const text = screenText(press(open(80, 24), "v", "v"), mono).join("\n");
+  expect(text).not.toContain("…");
+  expect(text).toContain("-- clean --");
+  expect(text).toContain("139");
+});
+
+describe("a chamber past its anchor", () => {
+  const past = "past_anchor: the correction needed would take silane 6 % above the last qualified recipe";
+
+  test("waits for a person, which is no fault", () => {
+    const overview = desk.overview();
+    const row = { ...overview.chambers[0], attention: "fault" as const, alarm: "past_anchor" };
+    for (const [columns, rows] of sizes) {
+      const state = press(startState(columns, rows), { kind: "overview", overview: { ...overview, chambers: [row] } });
+      const text = screenText(state, mono).join("\n");
+      expect(text).toContain("A PERSON MUST LOOK");
+      expect(text).not.toContain("FAULT");
+    }
+    const answer = { ...proposal, advice: "fault" as const, alarms: [past] };
+    const asked = press(open(80, 24), { kind: "proposed", chamber: "A2", proposal: answer });
+    expect(screenText(asked, mono).join("\n")).toContain("A2: a person must look before more is corrected");
+    expect(screenText(press(asked, "a"), mono).join("\n")).toContain("before a person has looked");
+  });
+});
+
+test("a chamber is held against the goal of its own recipe", () => {
+  const overview = desk.overview();
+  const [first, ...rest] = overview.chambers;
+  const own = { ...first, recipe: "thick", goal: { thicknessNm: { value: 84, within: 2 } } };
+  const state = press(startState(80, 24), { kind: "overview", overview: { ...overview, chambers: [own, ...rest] } });
+  const text = screenText(state, mono).join("\n");
+  expect(text).not.toContain("4.4 nm low");
+  expect(text).toContain("no goal for it");
 });
 
 describe("the line screen", () => {

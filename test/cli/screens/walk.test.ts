@@ -56,7 +56,7 @@ describe("a shift at the line", () => {
     expect(seen()).toContain("silane   812 -> 835 sccm");
 
     await press("q");
-    expect(seen()).toContain("c-000216 adopted, not entered yet");
+    expect(seen()).toContain("c-000216 adopted, not entered");
     await press("e", "enter");
     expect(desk.calls.some((call) => call.startsWith("enter"))).toBe(false);
     await press("y");
@@ -72,6 +72,12 @@ describe("a shift at the line", () => {
     await press("c", "y");
     expect(desk.calls).toContain("close c-000216");
     expect(seen()).toContain("expected 88.1 nm, got 88.4 nm");
+    // the verdict once, and the way to take it back
+    expect(seen()).toContain("c-000216 is closed: as expected; 1 of 1 measured run in goal.");
+    expect(seen().match(/is closed: /g)).toHaveLength(1);
+    expect(seen()).toContain("coatwright undo c-000216 --reason TEXT");
+    await press("u");
+    expect(seen()).toContain("undo works on the chamber screen: q goes back to it, then u");
     await press("q", "q");
     expect(seen()).toContain("FINE: leave it alone");
   });
@@ -88,6 +94,47 @@ describe("a shift at the line", () => {
     expect(seen()).toContain("reason because");
     await press("enter");
     expect(desk.calls).toContain("adopt p-000215 because");
+  });
+
+  test("a value that reads back differently is entered as read, checked against the setting's unit and range", async () => {
+    const desk = new FakeDesk();
+    const { press, seen, start } = sit(desk);
+    await start();
+    await press("p");
+    await press("a", ..."why", "enter");
+    // from the line screen, so that the settings have to be fetched
+    await press("q", "e", "n");
+    expect(seen()).toMatch(/c-000216 is not entered; .*e again/);
+    await press("e", "d");
+    expect(seen()).toContain("adopted  silane 835 sccm");
+    await press(..."8,3", "enter");
+    expect(seen()).toContain("comma");
+    await press("ctrl-u", ..."20", "enter");
+    expect(seen()).toContain("300 sccm to 1200 sccm");
+    await press("ctrl-u", ..."834", "enter");
+    expect(seen()).toContain("silane 834 sccm instead of 835 sccm");
+    await press("enter");
+    expect(desk.calls.some((call) => call.startsWith("enter"))).toBe(false);
+    await press("d", "down", "down", ..."9.57", "space", ..."min", "enter");
+    expect(seen()).toContain("time goes in steps");
+    await press("ctrl-u", ..."572", "enter");
+    expect(seen()).toContain("time 572 s is what was adopted");
+    await press("y");
+    expect(desk.calls).toContain("enter c-000216 silane=834");
+  });
+
+  test("a run logged while a change waits to be entered says on which settings it is booked", async () => {
+    const desk = new FakeDesk();
+    const { press, seen, start } = sit(desk);
+    await start();
+    await press("l");
+    expect(seen()).not.toContain("booked");
+    await press("escape", "p");
+    await press("a", ..."why", "enter");
+    await press("q", "l");
+    expect(seen().replace(/\s+/g, " ")).toContain(
+      "c-000216 is adopted but not entered: this run is booked on the settings before it",
+    );
   });
 
   test("a change is taken back with a reason", async () => {

@@ -159,9 +159,19 @@ describe("the plain overview", () => {
     const text = overviewText(overview, { colour: false, ascii: false, width: 80 });
     expect(text).toContain("A2 blue  OFF: ask for a proposal");
     expect(text).toContain("in goal 11 % (unlikely)");
-    expect(text).toMatch(/thickness 83\.6 nm, 4\.4 nm low; \d+ of 14 runs outside the goal\./);
+    expect(text).toMatch(/thickness last read 83\.6 nm, 4\.4 nm low; \d+ of 14 runs outside the goal\./);
     expect(text.indexOf("A2 blue")).toBeLessThan(text.indexOf("A1 blue"));
     expect(text.endsWith("\n")).toBe(true);
+  });
+
+  test("says what was last read by the goal of the chamber's own recipe, and names that goal where it is another", () => {
+    const [first] = overview.chambers;
+    const own = { ...first, recipe: "thick", goal: { thicknessNm: { value: 84, within: 2 } }, cleaned: false };
+    const text = overviewText({ ...overview, chambers: [own] }, { colour: false, ascii: false, width: 80 });
+    expect(text).toContain("goal of thick: 84 ±2 nm");
+    expect(text).toMatch(/thickness last read 83\.6 nm, in goal;/);
+    expect(text).not.toContain("since clean:");
+    expect(text).not.toMatch(/deposition/);
   });
 
   test("has no escape without colour, and only ASCII where asked", () => {

@@ -4,7 +4,7 @@ import { adopt, parseProposalId, propose, question, recordRun } from "../../../r
 import { aim } from "../../../recipes/rehearsal/aim.ts";
 import { virtualChamber } from "../../../recipes/rehearsal/virtual-chamber.ts";
 import { expectClose } from "../../support/close.ts";
-import { calm, demoLine, lineWith, onGoal, play, settled } from "../../support/desk-line.ts";
+import { calm, demoLine, lineWith, onGoal, play, settled, stepsFor } from "../../support/desk-line.ts";
 
 const filmOnly = {
   "  weighted_reflectance: at most 2.5 %\n": "",
@@ -124,12 +124,57 @@ describe("the advice", () => {
   });
 
   it("asks for a person where corrections would add up past the anchor", async () => {
-    const played = play(lineWith({ ...filmOnly, "time: 10 %": "time: 3 %" }), "A1", "anchor", { given: steady });
-    const thin = new Map(target).set("time", Math.round((target.get("time") as number) * 0.93));
+    const played = play(
+      lineWith({ ...filmOnly, "time: 10 %": "time: 3 %\n  silane: 3 %\n  ammonia: 3 %" }),
+      "A1",
+      "anchor",
+      { given: steady },
+    );
+    const thin = new Map(target).set("time", Math.round((target.get("time") as number) * 0.88));
     await settled(played, thin, 16);
     const { answer } = await ask(played.ws);
     expect(answer.advice).toBe("fault");
     expect(answer.alarms.map((a) => a.name)).toContain("past_anchor");
+    expect(answer.because.join(" ")).toMatch(/the correction needed .* would take .* past the 3 % allowed/);
+    expect(answer.because.join(" ")).toMatch(/--override past_anchor/);
+  });
+
+  it("stays inside the anchor where a change inside it reaches the goal", async () => {
+    const played = play(lineWith({ ...filmOnly, "time: 10 %": "time: 3 %" }), "A1", "anchor", { given: steady });
+    await settled(played, new Map(target).set("time", Math.round((target.get("time") as number) * 0.93)), 16);
+    const { answer } = await ask(played.ws);
+    expect(answer.advice).toBe("change");
+    expect((answer.after.get("time") as number) / (answer.before.get("time") as number)).toBeLessThan(1.031);
+  });
+
+  it("is out of reach, not a fault, where no settings at all reach the goal", async () => {
+    const far = { ...filmOnly, "index: 2.06 within 0.02": "index: 2.25 within 0.02" };
+    const played = play(lineWith(far), "A1", "far", { given: steady });
+    await settled(played, target);
+    expect((await ask(played.ws)).answer.advice).toBe("out_of_reach");
+  });
+
+  it("rests the reasons on the runs of the recipe asked for", async () => {
+    const ws = lineWith(filmOnly);
+    const played = play(ws, "A1", "two recipes", { given: steady });
+    await settled(played, target);
+    const thin = new Map(target).set("time", Math.round((target.get("time") as number) * 0.9));
+    await ws.book.append({ kind: "recipe", data: { chamber: "A1", recipe: "dark", steps: stepsFor(thin) } });
+    await recordRun(ws, { chamber: "A1", recipe: "dark", index: 2.06, thickness: 79.5 }, {});
+    const { answer } = await propose(ws, { chamber: "A1", recipe: "blue", forMode: null, dryRun: true });
+    expect(answer.advice).toBe("keep");
+    expect(answer.because.join(" ")).not.toMatch(/79\.5|8[0-6]\.\d nm on average/);
+  });
+
+  it("asks for one more run where a single surprising reading in production would call for a change", async () => {
+    const played = play(lineWith(filmOnly), "A1", "one reading", { given: steady });
+    await settled(played, target);
+    await played.recipe(target);
+    await played.run(target, 4);
+    await played.run(target, 1, (r) => ({ index: r.index + 0.016, thicknessNm: r.thicknessNm + 1 }));
+    const { answer } = await ask(played.ws);
+    expect(["measure", "keep"]).toContain(answer.advice);
+    expect(answer.after).toBe(answer.before);
   });
 
   it("is measure for a chamber with nothing known, and says so", async () => {
