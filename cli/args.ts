@@ -120,6 +120,12 @@ function takeWords(verb: Verb, positionals: string[], values: Map<string, unknow
       refuse("missing-argument", `${verb.name} needs ${word.name.toUpperCase()}`, { hint: usage(verb) });
     }
   });
+  if (verb.rest) {
+    const more = positionals.splice(verb.words.length);
+    if (more.length > 0) values.set(verb.rest.name, more);
+    else if (verb.rest.needed && !values.has("help"))
+      refuse("missing-argument", `${verb.name} needs ${verb.rest.name.toUpperCase()}`, { hint: usage(verb) });
+  }
   const extra = positionals[verb.words.length];
   if (extra !== undefined)
     refuse("extra-word", `"${extra}" is one word too many for ${verb.name}`, {
@@ -132,13 +138,19 @@ function takeWords(verb: Verb, positionals: string[], values: Map<string, unknow
 
 export function usage(verb: Verb): string {
   const words = verb.words.map((w) => (w.needed ? w.name.toUpperCase() : `[${w.name.toUpperCase()}]`));
+  if (verb.rest) words.push(`${verb.rest.name.toUpperCase()} ...`);
   const flags = verb.flags.filter((f) => f.needed).map((f) => `--${f.name} ${f.kind === "settings" ? "k=v" : f.shows}`);
   return ["coatwright", verb.name, ...words, ...flags].join(" ");
 }
 
 /** Arguments from a JSON request: names of words in lower case, flags with underscores for dashes. */
 export function argsFromRequest(verb: Verb, given: Record<string, unknown>): Args {
-  const known = [...verb.words.map((w) => w.name), ...verb.flags.map((f) => f.name), ...(verb.writes ? writing : [])];
+  const known = [
+    ...verb.words.map((w) => w.name),
+    ...(verb.rest ? [verb.rest.name] : []),
+    ...verb.flags.map((f) => f.name),
+    ...(verb.writes ? writing : []),
+  ];
   const values = new Map<string, unknown>();
   for (const [key, value] of Object.entries(given)) {
     const name = key.replaceAll("_", "-").toLowerCase();

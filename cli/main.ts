@@ -3,7 +3,7 @@
  * overview where there is no terminal.
  */
 import "./tiering.ts";
-import { mkdtempSync, readFileSync, rmSync } from "node:fs";
+import { mkdtempSync, readFileSync, rmSync, writeSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join, resolve } from "node:path";
 import { Refusal, refuse } from "../engine/index.ts";
@@ -26,9 +26,17 @@ const world: World = {
       return readFileSync(resolve(process.cwd(), path));
     } catch (error) {
       const code = (error as NodeJS.ErrnoException).code;
-      return refuse("no-file", code === "ENOENT" ? `there is no file ${path}` : `${path} cannot be read (${code})`, {
-        file: path,
-      });
+      return refuse(
+        "no-file",
+        code === "ENOENT"
+          ? `there is no file ${path}`
+          : code === "EISDIR"
+            ? `${path} is a folder, a file is needed`
+            : `${path} cannot be read (${code})`,
+        {
+          file: path,
+        },
+      );
     }
   },
   open: new Map(),
@@ -135,7 +143,12 @@ async function bare(argv: readonly string[]): Promise<number> {
 
 for (const stream of [process.stdout, process.stderr])
   stream.on("error", (error: NodeJS.ErrnoException) => {
-    process.exit(error.code === "EPIPE" ? 0 : 1); // closed early: the reader has seen enough
+    if (error.code === "EPIPE") process.exit(0); // closed early: the reader has seen enough
+    try {
+      writeSync(2, `could not print (${error.code}); what was recorded stays recorded\n`);
+    } finally {
+      process.exit(1);
+    }
   });
 
 /** What nobody caught: said in short, for Node would print the bundle's line, which is half a megabyte long. */

@@ -1,5 +1,5 @@
 /** One verb performed: arguments to outcome, and every Refusal to words, JSON and an exit code. The only place that maps codes. */
-import { type Problem, Refusal } from "../engine/index.ts";
+import { type Problem, Refusal, refuse } from "../engine/index.ts";
 import { holdsLine, type Ports, parseWhen, safeText, Workspace } from "../recipes/index.ts";
 import type { Args } from "./args.ts";
 import type { Call, Outcome, Stamped, Verb } from "./verbs/verb.ts";
@@ -41,9 +41,13 @@ export async function perform(verb: Verb, args: Args, world: World, line: string
         at === undefined
           ? undefined
           : parseWhen(at, { timeZone: call.workspace().line.timeZone, nowMs: world.ports.now() });
+      if (ms !== undefined && ms > world.ports.now() + 5 * 60_000)
+        refuse("future-time", `--at ${at} lies in the future`, {
+          hint: "the book holds what happened; write the date for a time of yesterday, as 2026-03-11T23:40",
+        });
       return {
         at: ms === undefined ? undefined : new Date(ms).toISOString(),
-        by: args.text("by"),
+        by: personNamed(args.text("by")),
         dryRun: args.switch("dry-run"),
       };
     },
@@ -53,11 +57,18 @@ export async function perform(verb: Verb, args: Args, world: World, line: string
   return verb.run(call);
 }
 
+/** --by: a name people can read, or nothing. */
+function personNamed(by: string | undefined): string | undefined {
+  if (by === undefined) return undefined;
+  const name = by.trim();
+  if (name === "" || name.length > 100 || safeText(name) !== name)
+    refuse("bad-name", `--by "${safeText(by)}" is not a name`, { hint: "1 to 100 printable characters" });
+  return name;
+}
+
 const exits: Record<string, number> = {
   locked: 4,
   "damaged-book": 3,
-  "disk-full": 1,
-  "io-error": 1,
   "unsafe-after-fsync": 1,
 };
 

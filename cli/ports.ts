@@ -5,6 +5,7 @@
 import { randomUUID } from "node:crypto";
 import fs from "node:fs";
 import os from "node:os";
+import { dirname } from "node:path";
 import type { FileSystem, Ports } from "../recipes/index.ts";
 
 const WINDOWS = process.platform === "win32";
@@ -43,6 +44,18 @@ function syncFolder(path: string): void {
   }
 }
 
+/** Parents first, one by one: Node's own recursive way never ends in places like /proc, where nothing can be made. */
+function makeFolder(path: string): void {
+  if (fs.statSync(path, { throwIfNoEntry: false })?.isDirectory()) return;
+  const parent = dirname(path);
+  if (parent !== path) makeFolder(parent);
+  try {
+    fs.mkdirSync(path);
+  } catch (error) {
+    if (codeOf(error) !== "EEXIST" || !fs.statSync(path).isDirectory()) throw error;
+  }
+}
+
 /** The local file system, synchronous throughout: appends are short and their order is the point. */
 export function nodeFiles(): FileSystem {
   return {
@@ -51,7 +64,7 @@ export function nodeFiles(): FileSystem {
     exists: (path) => fs.existsSync(path),
     isFolder: (path) => fs.statSync(path, { throwIfNoEntry: false })?.isDirectory() ?? false,
     list: (folder) => fs.readdirSync(folder),
-    makeFolder: (path) => void fs.mkdirSync(path, { recursive: true }),
+    makeFolder,
     createExclusive: (path) => fs.openSync(path, "wx"),
     openAppend: (path) => fs.openSync(path, "a"),
     openRead: (path) => fs.openSync(path, "r"),

@@ -37,6 +37,7 @@ export { formatWhen, parseWhen } from "./line/zoned-time.ts";
 export type * from "./outlook.ts";
 /** Loaded when asked for: CSV reading, and the demo's virtual chambers, are no part of what a proposal waits for. */
 export const importing = () => import("./desk/importing.ts");
+export const correcting = () => import("./desk/correcting.ts");
 export const creating = () => import("./desk/creating.ts");
 export type { FileSystem, Ports } from "./ports.ts";
 export { changeAt } from "./record/change-steps.ts";

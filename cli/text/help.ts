@@ -25,7 +25,7 @@ export function generalHelp(): string {
 
 export function verbHelp(verb: Verb): string {
   const rows = [
-    ...verb.words.map((w) => [w.name.toUpperCase(), w.what]),
+    ...[...verb.words, ...(verb.rest ? [verb.rest] : [])].map((w) => [w.name.toUpperCase(), w.what]),
     ...verb.flags.map((f) => [`--${f.name}${f.kind === "switch" ? "" : ` ${f.shows}`}`, f.what]),
     ...(verb.writes
       ? [

@@ -46,7 +46,9 @@ export const changeVerbs: Verb[] = [
       const entered = call.args.switch("entered");
       const next = entered
         ? `in force. After the next measured run: coatwright close ${done.change}`
-        : `type these in at the tool, then: coatwright enter ${done.change}`;
+        : done.awaits?.length
+          ? `nothing may be typed in yet: it waits for ${done.awaits.join(" or ")}, who says: coatwright approve ${done.change}`
+          : `type these in at the tool, then: coatwright enter ${done.change}`;
       return changed(done, `${done.change} is ${entered ? "adopted and entered" : "adopted"}.`, next, {
         sheet: done.sheet,
       });

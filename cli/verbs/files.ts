@@ -1,5 +1,5 @@
 /** The verbs about files: new, check, import, film, report. */
-import { filmStack } from "../../engine/index.ts";
+import { filmStack, Refusal } from "../../engine/index.ts";
 import {
   changeAt,
   checkLine,
@@ -113,6 +113,7 @@ export const fileVerbs: Verb[] = [
     writes: false,
     run: (call) => {
       const ws = call.workspace();
+      if (ws.book.damage.length > 0) throw new Refusal(ws.book.problems());
       const named = call.args.text("change");
       const markdown = reportMarkdown(ws, named === undefined ? null : changeAt(ws.ledger, parseChangeId(named)));
       return { document: { markdown }, text: markdown };

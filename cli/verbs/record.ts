@@ -1,5 +1,14 @@
 /** The verbs that write down what happened: run, record run, recipe, clean, precoat, service, note. */
-import { type Recorded, type RunGiven, recordEvent, recordNote, recordRecipe, recordRun } from "../../recipes/index.ts";
+import { refuse } from "../../engine/index.ts";
+import {
+  correcting,
+  type Recorded,
+  type RunGiven,
+  recordEvent,
+  recordNote,
+  recordRecipe,
+  recordRun,
+} from "../../recipes/index.ts";
 import { readSites } from "./sites.ts";
 import { type Call, chamberFlag, flag, type Outcome, settingsFlag, type Verb, word } from "./verb.ts";
 
@@ -44,13 +53,29 @@ function runGiven(call: Call): RunGiven {
   };
 }
 
+/** What would be written, a line a field, for --dry-run. */
+function draftWords(draft: { kind: string; data: object }): string[] {
+  const words = (value: unknown): string =>
+    typeof value === "object" && value !== null
+      ? "value" in value && "unit" in value
+        ? `${value.value} ${value.unit}`
+        : Object.entries(value)
+            .map(([k, v]) => (/^\d+$/.test(k) ? words(v) : `${k} ${words(v)}`))
+            .join(", ")
+      : String(value);
+  return [
+    `would record a ${draft.kind}:`,
+    ...Object.entries(draft.data).map(([k, v]) => `  ${k.replaceAll("_", " ")}: ${words(v) || "none"}`),
+  ];
+}
+
 /** Entry and hash, or what would be written. */
 export function recorded(done: Recorded): Outcome {
   const { entry, hash, sentence, notices, drafts } = done;
   if (entry === null)
     return {
       document: { would_record: drafts },
-      text: `would record: ${JSON.stringify(drafts[0]?.data)}\n${sentence}`,
+      text: [...drafts.flatMap(draftWords), sentence].join("\n"),
       notices,
     };
   return { document: { entry, hash, said: sentence }, text: `recorded #${entry}. ${sentence}`, notices };
@@ -188,6 +213,52 @@ export const recordVerbs: Verb[] = [
           call.stamp(),
         ),
       );
+    },
+  },
+  {
+    name: "correct",
+    does: "a new entry that supersedes a wrong one; what was decided on the old value is marked",
+    words: [word("entry", "number of the wrong entry")],
+    rest: word(
+      "fields",
+      "what is right: index=2.043 thickness=84.1nm silane=812sccm count=2 chamber=A1 at=TIME; - takes a value away",
+    ),
+    flags: [flag("reason", "TEXT", "why", true)],
+    examples: ["coatwright correct 118 thickness=84.1nm --reason 'digits swapped'"],
+    writes: true,
+    run: async (call) => {
+      const number = Number(call.args.need("entry").replace(/^#/, ""));
+      if (!Number.isInteger(number) || number < 0)
+        refuse("no-such-entry", `"${call.args.need("entry")}" is not the number of an entry`);
+      const typed = call.args.settings("fields");
+      const pairs = Array.isArray(typed)
+        ? (typed as readonly string[]).map((one): [string, string] => {
+            const at = one.indexOf("=");
+            return at > 0
+              ? [one.slice(0, at).trim(), one.slice(at + 1)]
+              : refuse("not-a-field", `"${one}" corrects nothing`, { hint: "write field=value, as index=2.043" });
+          })
+        : Object.entries(typed).map(([k, v]): [string, string] => [
+            k,
+            typeof v === "object" ? `${v.value} ${v.unit}` : String(v),
+          ]);
+      const { correctEntry } = await correcting();
+      const done = await correctEntry(call.workspace(), {
+        entry: number,
+        given: Object.fromEntries(pairs),
+        reason: call.args.need("reason"),
+        ...call.stamp(),
+      });
+      const { entry, hash, rests, notices, drafts } = done;
+      const rest =
+        rests.length > 0 ? ` ${rests.join(", ")} rest${rests.length === 1 ? "s" : ""} on what was corrected.` : "";
+      if (entry === null)
+        return { document: { would_record: drafts }, text: drafts.flatMap(draftWords).join("\n"), notices };
+      return {
+        document: { entry, hash, corrects: number, rests },
+        text: `recorded #${entry}: entry ${number} is corrected.${rest}`,
+        notices,
+      };
     },
   },
 ];

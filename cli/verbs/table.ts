@@ -17,6 +17,7 @@ const inOrder = [
   "record precoat",
   "record service",
   "record note",
+  "correct",
   "import",
   "film",
   "chamber",

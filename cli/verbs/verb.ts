@@ -51,6 +51,8 @@ export interface Verb {
   name: string;
   does: string;
   words: readonly Word[];
+  /** Words that may follow, as many as there are. */
+  rest?: Word;
   flags: readonly Flag[];
   examples: readonly string[];
   writes: boolean;

@@ -124,6 +124,7 @@ export async function enter(
   how: { change: number; readBack: readonly StepSettings[]; dryRun?: boolean } & Stamp,
 ): Promise<Changed> {
   const warnings: string[] = [];
+  let sheet: string[] = [];
   const written = await write(
     ws,
     (ledger) => {
@@ -147,6 +148,7 @@ export async function enter(
       }
       const found = outside(canonicalSettings(ws.line, draft.data.read_back), ws.chamber(change.chamber), ws.line);
       warnings.push(...found.map((f) => f.sentence));
+      sheet = sheetOf(ws, change.before, draft.data.read_back);
       return [draft];
     },
     { dryRun: how.dryRun },
@@ -155,7 +157,7 @@ export async function enter(
   return {
     ...written,
     change: change.id,
-    sheet: sheetOf(ws, change.before, change.entered?.readBack ?? change.after),
+    sheet,
     warnings,
   };
 }

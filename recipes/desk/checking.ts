@@ -15,6 +15,14 @@ export interface Checked {
   head: string;
 }
 
+/** Once runs have pinned the facet factor, what the declared one alone would span is no news. */
+function withPinnedFacet(ws: Workspace, said: string[]): string[] {
+  const facet = ws.book.damage.length === 0 ? ws.model?.facet : undefined;
+  if (!facet || facet.runs === 0) return said;
+  const pinned = `The facet factor is pinned at ${facet.mean.toFixed(3)} sd ${facet.sd.toFixed(3)} by ${facet.runs} reflectance minima on textured cells.`;
+  return [...said.filter((sentence) => !sentence.startsWith("The facet factor alone spans")), pinned];
+}
+
 export function checkLine(ws: Workspace): Checked {
   const problems: Problem[] = [];
   const warnings: string[] = [];
@@ -33,6 +41,10 @@ export function checkLine(ws: Workspace): Checked {
   }
   const { book, ledger } = ws;
   problems.push(...book.problems());
+  if (book.tail)
+    warnings.push(
+      `an append was interrupted: ${book.tail.bytes} bytes at the end of the book were never acknowledged; the next writer sets them aside`,
+    );
   for (const problem of ledger.problems) warnings.push(`${problem.file}:${problem.row}: ${problem.message}`);
   warnings.push(...book.notices);
   if (lineRead) {
@@ -41,7 +53,12 @@ export function checkLine(ws: Workspace): Checked {
         warnings.push(
           `the book has entries of chamber ${chamber}, which line.yaml does not declare: they are left aside`,
         );
-    warnings.push(...editedViews(ws));
+    if (book.damage.length === 0) warnings.push(...editedViews(ws));
+    else
+      warnings.push(
+        "a damaged book is put back from a copy, or looked at by a person: nothing is written to it until then",
+      );
+    said = withPinnedFacet(ws, said);
   }
   if (ledger.lineFile !== null && ledger.lineFile !== new TextDecoder().decode(ws.readBeside(LINE_FILE)))
     warnings.push("line.yaml has changed since the last entry; the next entry records the difference");

@@ -4,6 +4,7 @@ import { blankLine, DEMO_LINE } from "../line/template.ts";
 import type { Ports } from "../ports.ts";
 import { replaceFile } from "../record/atomic-replace.ts";
 import type { AnyDraft } from "../record/entries.ts";
+import { fileRefusal } from "../record/file-trouble.ts";
 import { demoEntries } from "../rehearsal/demo.ts";
 import { writeViews } from "./views.ts";
 import { LINE_FILE, Workspace } from "./workspace.ts";
@@ -18,7 +19,11 @@ export async function createLine(
   const path = `${folder}/${LINE_FILE}`;
   if (ports.files.exists(path))
     refuse("line-exists", `${folder} already holds a ${LINE_FILE}`, { hint: "name an empty folder" });
-  ports.files.makeFolder(folder);
+  try {
+    ports.files.makeFolder(folder);
+  } catch (error) {
+    throw fileRefusal(error, `make the folder ${folder}`, folder);
+  }
   const name =
     folder
       .replace(/[/\\]+$/, "")

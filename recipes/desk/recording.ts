@@ -4,6 +4,7 @@ import type { Dimension } from "../../engine/index.ts";
 import { nearestWord, parseQuantity, refuse } from "../../engine/index.ts";
 import { gaugeFor } from "../advice/expectation.ts";
 import type { Chamber } from "../line/line.ts";
+import { nameProblem } from "../line/names.ts";
 import { asQuantities, type GivenSettings, parseSet } from "../line/settings.ts";
 import { outside } from "../line/window.ts";
 import { openChange } from "../record/changes.ts";
@@ -233,8 +234,6 @@ function unentered(ws: Workspace, chamber: string, recipe: string, set: GivenSet
   ];
 }
 
-const namePattern = /^[A-Za-z0-9][A-Za-z0-9._-]{0,63}$/;
-
 /** The recipe a run is booked under; a new name is taken only where the chamber has none yet or the line declares it. */
 function recipeNamed(ws: Workspace, chamber: string, named: string | undefined): string {
   if (named === undefined) return ws.recipe(chamber);
@@ -250,8 +249,8 @@ function recipeNamed(ws: Workspace, chamber: string, named: string | undefined):
 }
 
 function properName(name: string): void {
-  if (!namePattern.test(name) || name.includes("..") || ["__proto__", "constructor", "prototype"].includes(name))
-    refuse("bad-name", `"${name}" is not a name for a recipe`, { hint: "letters, digits, . _ -, at most 64" });
+  const complaint = nameProblem(name);
+  if (complaint) refuse("bad-name", complaint.message, { hint: complaint.hint });
 }
 
 /** States what is in force. All settings the model needs must be given, or be in force already. */

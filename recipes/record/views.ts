@@ -27,10 +27,12 @@ export interface View {
 
 export type ViewState = "as the book gives it" | "missing" | "outdated" | "edited by hand";
 
+const isFileName = (name: string): boolean => FILE_NAME.test(name) && !name.includes("..");
+
 /** Path of a view in the line folder. Throws `bad-name`. */
 export function viewPath(chamber: string, recipe: string): string {
   for (const name of [chamber, recipe]) {
-    if (!FILE_NAME.test(name) || name.includes("..")) {
+    if (!isFileName(name)) {
       refuse("bad-name", `"${name}" cannot be part of a file name`, { hint: "letters, digits, . _ - only" });
     }
   }
@@ -98,7 +100,8 @@ export function viewsOf(ledger: Ledger): View[] {
   return [...ledger.chambers.values()].flatMap((record) =>
     [...record.versions].flatMap(([recipe, versions]) => {
       const last = versions.at(-1);
-      if (!last) return [];
+      // A book may be older than the rule for names: such a recipe has no view, and never a path out of the folder.
+      if (!last || !isFileName(record.chamber) || !isFileName(recipe)) return [];
       const { chamber } = record;
       return [{ chamber, recipe, path: viewPath(chamber, recipe), text: textOf(chamber, last, versions.at(-2)) }];
     }),

@@ -113,6 +113,14 @@ export function readColumns(table: Table, line: Line, map: ImportMap, problems: 
     if (read?.unit != null) {
       const step = dot < 0 ? "" : `${(map.columns.get(lower) ?? heading).slice(0, dot)}.`;
       const name = step + read.setting.name;
+      const other = columns.settings.find((one) => one.name === name);
+      if (other) {
+        problems.add("column-twice", `"${heading}" gives ${name} again, as column ${other.column} does`, {
+          row,
+          column,
+        });
+        continue;
+      }
       columns.settings.push({ column, setting: read.setting, name, unit: read.unit });
       columns.understood.push({ column, heading, meaning: read.unit ? `${name}, ${read.unit}` : name });
       continue;

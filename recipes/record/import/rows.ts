@@ -4,7 +4,8 @@
  */
 import { refuse, toCanonical } from "../../../engine/index.ts";
 import type { Chamber, Gauge, Line } from "../../line/line.ts";
-import { asQuantity } from "../../line/settings.ts";
+import { nameProblem } from "../../line/names.ts";
+import { asQuantity, refuseImpossible as refuseFarOff } from "../../line/settings.ts";
 import { parseWhen } from "../../line/zoned-time.ts";
 import type { AnyDraft, Quantity, Reading } from "../entries.ts";
 import { bookTime } from "../format.ts";
@@ -166,7 +167,8 @@ function otherDraft(
 function runDraft(cells: Cells, context: RowContext, chamber: Chamber, atMs: number, head: Head): AnyDraft | null {
   const { ledger, problems, file, map } = context;
   const recipe =
-    cells.optional("recipe", (cell) => readText(cell, 64)) ?? defaultRecipe(context, chamber.name, cells.row.row);
+    cells.optional("recipe", (cell) => recipeName(readText(cell, 64))) ??
+    defaultRecipe(context, chamber.name, cells.row.row);
   if (recipe === null) return null;
   const force = recipeInForce(ledger, chamber.name, recipe, atMs);
   const settings = new Map<string, Quantity>(force ? flatSettings(force.steps) : []);
@@ -241,6 +243,13 @@ function defaultRecipe(context: RowContext, chamber: string, row: number): strin
   return null;
 }
 
+/** A recipe's name becomes a file's name, so it must be one. */
+function recipeName(text: string): string {
+  const complaint = nameProblem(text);
+  if (complaint) refuse("bad-name", complaint.message, { hint: complaint.hint });
+  return text;
+}
+
 function settingValue(
   cell: string,
   column: Columns["settings"][number],
@@ -250,6 +259,7 @@ function settingValue(
   const canonical = toCanonical(readNumber(cell, context.map.decimal), column.unit);
   const setting = chamber.settings.get(column.setting.name) ?? column.setting;
   refuseImpossible(canonical, setting.dimension, `${cell} ${column.unit}`.trim());
+  refuseFarOff(setting, canonical, chamber.name);
   if (canonical < setting.low || canonical > setting.high) {
     const key = `${setting.name} on ${chamber.name}`;
     context.outside.set(key, (context.outside.get(key) ?? 0) + 1);

@@ -57,6 +57,56 @@ const cases: [string, () => string[], number, RegExp][] = [
     2,
     /200 s to 900 s/,
   ],
+  [
+    "a setting no tool can have run",
+    () => ["run", "A1", "2.06", "88.5", "--set", "silane=80sccm", "--line", "line"],
+    2,
+    /cannot have run on A1.*digit dropped/s,
+  ],
+  [
+    "a negative setting",
+    () => ["run", "A1", "2.06", "88.5", "--set", "silane=-5sccm", "--line", "line"],
+    2,
+    /cannot have run/,
+  ],
+  [
+    "a recipe nobody stated",
+    () => ["run", "A1", "2.06", "88.5", "--recipe", "blu", "--line", "line"],
+    2,
+    /did you mean blue/,
+  ],
+  [
+    "a name that is a path",
+    () => ["run", "A1", "2.06", "88.5", "--recipe", "../../etc", "--line", "line"],
+    2,
+    /cannot be a name/,
+  ],
+  [
+    "a time to come",
+    () => ["run", "A1", "2.06", "88.5", "--at", "2090-01-01T10:00:00Z", "--line", "line"],
+    2,
+    /future/,
+  ],
+  ["a nameless person", () => ["run", "A1", "2.06", "88.5", "--by", "", "--line", "line"], 2, /not a name/],
+  [
+    "weighted reflectance without its unit",
+    () => ["record", "run", "--chamber", "A1", "--weighted-reflectance", "0.023", "--line", "line"],
+    2,
+    /no unit/,
+  ],
+  [
+    "two columns for one setting",
+    () => csv("chamber,at,recipe,silane_sccm,silane_slm,index\nA1,2026-03-15T10:00:00Z,blue,812,0.5,2.05\n"),
+    2,
+    /runs\.csv:1:5.*again/s,
+  ],
+  [
+    "a far-off setting in a file",
+    () => csv(`${head}A1,2026-03-15T10:00:00Z,blue,80,7000,560,2.05,84.1\n`),
+    2,
+    /runs\.csv:2:4/,
+  ],
+  ["a folder for a file", () => ["import", ".", "--line", "line"], 2, /is a folder/],
   ["no line folder", () => ["check", "--line", "nowhere"], 2, /no line\.yaml/],
   [
     "a proposal that is not one",
@@ -139,5 +189,31 @@ describe("a pipe", () => {
   it("carries no escape codes", () => {
     for (const words of [[], ["chamber", "A2"], ["propose", "--chamber", "A1", "--dry-run"]])
       expect(cw.run([...words, ...(words.length ? ["--line", "line"] : [])]).stdout).not.toContain("\u001b");
+  });
+});
+
+describe("a wrong entry", () => {
+  it("is corrected by a new one, and what rested on it is named", () => {
+    expect(cw.run(["new", "wrong", "--demo"]).status).toBe(0);
+    const at = ["--line", "wrong"];
+    const run = JSON.parse(cw.run(["run", "A2", "2.05", "48.1", "--json", ...at]).stdout) as { entry: number };
+    cw.run(["propose", "--chamber", "A2", ...at]);
+    const done = JSON.parse(
+      cw.run([
+        "correct",
+        String(run.entry),
+        "thickness=84.1nm",
+        "time=550s",
+        "--reason",
+        "digits swapped",
+        "--json",
+        ...at,
+      ]).stdout,
+    );
+    expect(done).toMatchObject({ corrects: run.entry, rests: [`p-${String(run.entry + 1).padStart(6, "0")}`] });
+    const { stdout } = cw.run(["propose", "--chamber", "A2", "--dry-run", ...at]);
+    expect(stdout).toMatch(/84\.\d nm on average/);
+    expect(cw.run(["correct", "9999", "index=2", "--reason", "x", ...at]).stderr).toMatch(/no entry 9999/);
+    expect(cw.run(["correct", String(run.entry), "silan=800sccm", "--reason", "x", ...at]).status).toBe(2);
   });
 });
