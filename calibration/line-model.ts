@@ -40,9 +40,14 @@ interface Hopeful {
   done: number;
 }
 
-/** Events between two looks at the race, and how many nats behind is hopeless: e^-16 is 1e-7 of the weight. */
+/** Events between two looks at the race, and how many nats behind is hopeless: e^-12 is 6e-6 of the weight. */
 const stretch = 8;
-const hopeless = 16;
+const hopeless = 12;
+/**
+ * A sister speaks with her latest measured runs only, this many: the slopes she lends are known to a few per cent of their
+ * spread between chambers by then, and a long history would cost more time than it teaches.
+ */
+const heardRuns = 250;
 
 interface GenericPass {
   generic: Law;
@@ -181,7 +186,8 @@ export class LineModel {
         if (node.spread !== widest) return [];
         const start = startState(stateOf(generic), node);
         const state = copyState(start);
-        return [{ node, start, state, logBefore: logPrior, logWeight: logPrior, forecasts: null, done: 0 }];
+        const done = firstHeard(log);
+        return [{ node, start, state, logBefore: logPrior, logWeight: logPrior, forecasts: null, done }];
       });
       const left = new Set(this.race(log, hopefuls));
       const lanes = hopefuls.map((hopeful): Lane => ({ hopeful, inRace: left.has(hopeful), pass: null }));
@@ -200,7 +206,8 @@ export class LineModel {
   /** Runs the log at every node, in stretches, dropping nodes that have fallen hopelessly behind. Returns those left. */
   private race(log: PreparedLog, hopefuls: readonly Hopeful[]): Hopeful[] {
     let left = [...hopefuls];
-    for (let from = 0; from < log.events.length; from += stretch) {
+    const first = left[0]?.done ?? 0;
+    for (let from = first; from < log.events.length; from += stretch) {
       const to = Math.min(from + stretch, log.events.length);
       for (const h of left) this.advance(log, h, to);
       const best = Math.max(...left.map((h) => h.logWeight));
@@ -220,6 +227,16 @@ export class LineModel {
     h.logWeight += runEvents(h.state, this.layout, log, h.node, options);
     h.done = to;
   }
+}
+
+/** The event from which on a sister's log is heard. */
+function firstHeard(log: PreparedLog): number {
+  let runs = 0;
+  for (let at = log.events.length - 1; at >= 0; at--) {
+    if (log.events[at].kind === "run") runs++;
+    if (runs === heardRuns) return at;
+  }
+  return 0;
 }
 
 /** Runs of a log with something read. */

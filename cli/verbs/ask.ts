@@ -67,16 +67,22 @@ export const askVerbs: Verb[] = [
       const ws = call.workspace();
       const chamber = ws.chamber(call.args.need("chamber"));
       const recipe = ws.recipe(chamber.name, call.args.text("recipe"));
-      const { settings, expected } = predict(ws, chamber.name, recipe, parseSet(call.args.settings("set"), chamber));
+      const { settings, expected, outsideWindow } = predict(
+        ws,
+        chamber.name,
+        recipe,
+        parseSet(call.args.settings("set"), chamber),
+      );
       const document = {
         chamber: chamber.name,
         recipe,
         settings: asQuantities(settings, chamber),
         predicted: predictedDocument(expected.predicted),
-        chance_in_goal: expected.chanceInGoal,
+        chance_in_goal: expected.chanceInGoal === null ? null : Number(expected.chanceInGoal.toFixed(4)),
+        outside_window: outsideWindow,
         cannot_tell: expected.cannotTell,
       };
-      return { document, text: predictedText(ws, chamber, settings, expected) };
+      return { document, text: [predictedText(ws, chamber, settings, expected), ...outsideWindow].join("\n") };
     },
   },
   {

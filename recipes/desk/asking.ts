@@ -8,6 +8,7 @@ import { type Expectation, expectation } from "../advice/expectation.ts";
 import type { MeasuredRun, Mode } from "../advice/mode.ts";
 import type { Chamber } from "../line/line.ts";
 import { asQuantities } from "../line/settings.ts";
+import { outside } from "../line/window.ts";
 import type { Predicted } from "../outlook.ts";
 import { runsSince } from "../record/change-steps.ts";
 import { openChange } from "../record/changes.ts";
@@ -235,7 +236,7 @@ export function predict(
   name: string,
   recipe: string,
   over: Settings,
-): { settings: Settings; chamber: Chamber; expected: Expectation } {
+): { settings: Settings; chamber: Chamber; expected: Expectation; outsideWindow: string[] } {
   const chamber = ws.chamber(name);
   const settings = new Map([...inForce(ws, name, recipe).settings, ...over]);
   const expected = expectation(chamberModel(ws, name), settings, {
@@ -244,5 +245,6 @@ export function predict(
     light: ws.light,
     sites: usualSites(ws, name),
   });
-  return { settings, chamber, expected };
+  const outsideWindow = outside(settings, chamber, ws.line).map((f) => f.sentence);
+  return { settings, chamber, expected, outsideWindow };
 }
