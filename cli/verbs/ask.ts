@@ -47,7 +47,11 @@ export const askVerbs: Verb[] = [
       return {
         document,
         text: proposalText(ws, done),
-        notices: done.repeated ? [`asked before on the same basis: ${done.proposal}`] : [],
+        notices: done.notices?.length
+          ? done.notices
+          : done.repeated
+            ? [`asked before on the same basis: ${done.proposal}`]
+            : [],
         exit: done.document["advice"] === "out_of_reach" ? 3 : 0,
       };
     },

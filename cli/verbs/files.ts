@@ -1,5 +1,5 @@
 /** The verbs about files: new, check, import, film, report. */
-import { filmStack, Refusal } from "../../engine/index.ts";
+import { filmStack, Refusal, refuse } from "../../engine/index.ts";
 import {
   changeAt,
   checkLine,
@@ -23,6 +23,7 @@ export const fileVerbs: Verb[] = [
     writes: false,
     run: async (call) => {
       const dir = call.args.need("dir");
+      if (dir.trim() === "") refuse("missing-argument", "new needs DIR", { hint: "coatwright new my-line" });
       const folder = call.resolve(dir);
       const timeZone = Intl.DateTimeFormat().resolvedOptions().timeZone || "UTC";
       const { createLine } = await creating();

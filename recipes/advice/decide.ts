@@ -75,6 +75,8 @@ export interface Answer {
 
 /** A gain in chance smaller than this is not worth a change, whatever the loss says. */
 const worthwhile: Record<Mode, number> = { tuning: 0.03, production: 0.05 };
+/** Where even a perfectly known chamber would hardly ever be in goal, tuning is not done, it is hopeless. */
+const leastDone = 0.2;
 /** Tuning is done at this share of the chance a perfectly known chamber would have. */
 const doneShare = 0.9;
 
@@ -90,7 +92,7 @@ export function decide(q: Question): Answer {
   const attainable = attainableChance(q, ahead);
   const lastRead = q.runsSinceEvent.at(-1) ?? q.runsSinceClean.at(-1);
   const hit = lastRead ? measuredInGoal(lastRead, q.goal) === true : false;
-  const done = hit && now.chanceJudged >= doneShare * attainable;
+  const done = hit && now.chanceJudged >= Math.max(doneShare * attainable, leastDone);
   const mode = q.forMode ?? modeOf(q.runsSinceEvent, q.goal, done);
   const alarms = alarmsFrom(q.suspicions, q.overridden);
   const because = opening(q, now);

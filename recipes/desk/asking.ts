@@ -21,6 +21,7 @@ import { lastQualified, recipeInForce } from "../record/versions.ts";
 import { canonicalSettings, filmReading, leversOf, lightReadings } from "./learn.ts";
 import { goalWords } from "./words.ts";
 import type { Workspace } from "./workspace.ts";
+import { write } from "./writing.ts";
 
 /** The recipe in force now; refuses `no-recipe`, and `many-steps` for recipes of several layers. */
 export function inForce(ws: Workspace, chamber: string, recipe: string, atMs = ws.ports.now()) {
@@ -153,6 +154,8 @@ export interface Proposed {
   proposal: string | null;
   /** The same question had been asked before on the same basis. */
   repeated: boolean;
+  /** What a person should be told, as of other writing acts. */
+  notices?: readonly string[];
 }
 
 /** What a proposal of this kind rests on now. */
@@ -225,9 +228,9 @@ export async function propose(
       window: ws.line.window.map((limit) => limit.text),
     },
   };
-  const receipt = await ws.book.append(draft);
-  const proposal = proposalId(receipt.seq);
-  return { answer, document: { ...document, proposal }, proposal, repeated: false };
+  const { receipts, notices } = await write(ws, () => [draft]);
+  const proposal = proposalId(receipts[0].seq);
+  return { answer, document: { ...document, proposal }, proposal, repeated: false, notices };
 }
 
 /** What to expect at any settings: the recipe in force with some of them replaced. */

@@ -106,6 +106,8 @@ const cases: [string, () => string[], number, RegExp][] = [
     2,
     /runs\.csv:2:4/,
   ],
+  ["a folder without a name", () => ["new", ""], 2, /needs DIR/],
+  ["a folder where none can be", () => ["new", "/proc/nowhere/line"], 2, /could not make the folder/],
   ["a folder for a file", () => ["import", ".", "--line", "line"], 2, /is a folder/],
   ["no line folder", () => ["check", "--line", "nowhere"], 2, /no line\.yaml/],
   [

@@ -151,7 +151,9 @@ describe("the advice", () => {
     const far = { ...filmOnly, "index: 2.06 within 0.02": "index: 2.25 within 0.02" };
     const played = play(lineWith(far), "A1", "far", { given: steady });
     await settled(played, target);
-    expect((await ask(played.ws)).answer.advice).toBe("out_of_reach");
+    const { answer } = await ask(played.ws);
+    expect(answer.advice).toBe("out_of_reach");
+    expect(answer.done).toBe(false);
   });
 
   it("rests the reasons on the runs of the recipe asked for", async () => {
