@@ -110,7 +110,7 @@ export function effectSentences(model: ChamberModel, chamber: Chamber, before: S
   }
   if (timeName) {
     const e = model.effect(middle, after);
-    out.push(`${timeName} then gives thickness ${signed(d0 * e.lnThickness.mean, 1)} nm.`);
+    out.push(`${timeName}${gas.length > 0 ? " then" : ""} gives thickness ${signed(d0 * e.lnThickness.mean, 1)} nm.`);
   }
   return out;
 }
