@@ -45,7 +45,12 @@ export class ChamberModel {
     readonly layout: Layout,
     readonly log: PreparedLog,
     readonly passes: readonly NodePass[],
-    readonly context: { sisters: readonly { chamber: string; readings: number }[]; light: LightLink | null },
+    readonly context: {
+      sisters: readonly { chamber: string; readings: number }[];
+      light: LightLink | null;
+      /** Every node that started, those dropped on the way included: their forecasts end where they were dropped. */
+      entrants: readonly Omit<NodePass, "logAfter">[];
+    },
   ) {
     this.chamber = log.chamber;
     this.k = log.k;

@@ -38,7 +38,7 @@ export function suspicions(model: ChamberModel): Suspicion[] {
   const { log, layout } = model;
   const onsets = candidates(model);
   if (onsets.length === 0) return [];
-  const pass = model.passes[nodeBefore(model, onsets[0].at)];
+  const pass = leaderBefore(model, onsets[0].at);
   // One pass up to the earliest onset, then a snapshot before each.
   const state = copyState(pass.start);
   const light = model.context.light;
@@ -81,14 +81,15 @@ export function suspicions(model: ChamberModel): Suspicion[] {
 }
 
 /**
- * The node that led before the first possible onset: judged with the readings in question, a fault would make large
- * ordinary steps look likely and so excuse itself.
+ * The node that led before the first possible onset, though it may have been dropped since: judged with the readings in
+ * question, a fault makes large ordinary steps look likely and so excuses itself.
  */
-function nodeBefore(model: ChamberModel, at: number): number {
+function leaderBefore(model: ChamberModel, at: number): ChamberModel["context"]["entrants"][number] {
   const entries = new Set(model.log.events.slice(at).map((e) => e.entry));
   const first = model.runs.findIndex((run) => entries.has(run.entry));
-  const logs = model.passes.map((p) => p.logBefore + (p.forecasts.logBefore[first] ?? 0));
-  return logs.indexOf(Math.max(...logs));
+  const score = (e: ChamberModel["context"]["entrants"][number]) =>
+    e.logBefore + (e.forecasts.logBefore[first] ?? Number.NEGATIVE_INFINITY);
+  return model.context.entrants.reduce((best, e) => (score(e) > score(best) ? e : best));
 }
 
 function shift(state: State, by: number): void {
@@ -121,7 +122,7 @@ function missSince(model: ChamberModel, at: number): { runsSince: number; indexM
       .filter((e) => e.kind === "run")
       .map((e) => e.entry),
   );
-  const { forecasts } = model.passes[nodeBefore(model, at)];
+  const { forecasts } = model.passes[model.weights.indexOf(Math.max(...model.weights))];
   // Against what was expected before the onset: the first forecast after it, not the ones that have already followed.
   let sum = 0;
   let count = 0;

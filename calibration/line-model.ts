@@ -139,7 +139,9 @@ export class LineModel {
     const passes = this.race(log, hopefuls).map(
       (h): NodePass => ({ ...h, logAfter: h.logWeight, forecasts: h.forecasts ?? emptyForecasts() }),
     );
+    const entrants = hopefuls.map((h) => ({ ...h, forecasts: h.forecasts ?? emptyForecasts() }));
     const model = new ChamberModel(this.layout, log, passes, {
+      entrants,
       sisters: sisters.map((s) => ({ chamber: s.chamber, readings: readings(s) })),
       light: this.light,
     });

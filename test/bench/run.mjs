@@ -32,7 +32,9 @@ try {
     platform: "node",
     target: "node20",
     // CommonJS libraries (yaml) ask for Node's own modules by require.
-    banner: { js: 'import{createRequire as benchRequire}from"node:module";const require=benchRequire(import.meta.url);' },
+    banner: {
+      js: 'import{createRequire as benchRequire}from"node:module";const require=benchRequire(import.meta.url);',
+    },
     // The benches find the project by this, wherever they are bundled to.
     define: { BENCH_PROJECT: JSON.stringify(dirname(dirname(here))) },
     logLevel: "error",
