@@ -10,7 +10,7 @@ import { Refusal, refuse } from "../engine/index.ts";
 import { creating, holdsLine, overview, type Workspace } from "../recipes/index.ts";
 import { argsFromWords } from "./args.ts";
 import { converse } from "./converse.ts";
-import { errorDocument, errorText, exitOf, perform, type World, workspaceFor } from "./perform.ts";
+import { asRefusal, errorDocument, errorText, exitOf, perform, type World, workspaceFor } from "./perform.ts";
 import { realPorts } from "./ports.ts";
 import { generalHelp, verbHelp } from "./text/help.ts";
 import { findVerb } from "./verbs/table.ts";
@@ -22,6 +22,7 @@ const world: World = {
   cwd: process.cwd(),
   resolve: (path) => resolve(process.cwd(), path),
   readFile: (path) => {
+    if (path.trim() === "") refuse("no-file", "no file is named");
     try {
       return readFileSync(resolve(process.cwd(), path));
     } catch (error) {
@@ -73,7 +74,8 @@ async function main(argv: string[]): Promise<number> {
         : `${outcome.text.replace(/\n$/, "")}\n`,
     );
     return outcome.exit ?? 0;
-  } catch (error) {
+  } catch (caught) {
+    const error = asRefusal(caught);
     if (json) process.stdout.write(`${JSON.stringify({ schema: 1, ...errorDocument(error) }, null, 2)}\n`);
     process.stderr.write(`${errorText(error)}\n`);
     return error instanceof Refusal ? exitOf(error) : 1;

@@ -1,6 +1,15 @@
 /** One verb performed: arguments to outcome, and every Refusal to words, JSON and an exit code. The only place that maps codes. */
 import { type Problem, Refusal, refuse } from "../engine/index.ts";
-import { holdsLine, type Ports, parseWhen, safeText, Workspace } from "../recipes/index.ts";
+import {
+  fileRefusal,
+  formatWhen,
+  holdsLine,
+  LINE_FILE,
+  type Ports,
+  parseWhen,
+  safeText,
+  Workspace,
+} from "../recipes/index.ts";
 import type { Args } from "./args.ts";
 import type { Call, Outcome, Stamped, Verb } from "./verbs/verb.ts";
 
@@ -16,6 +25,11 @@ export interface World {
 
 export function workspaceFor(world: World, line: string | undefined): Workspace {
   const folder = world.resolve(line ?? ".");
+  if (world.ports.files.isFolder(`${folder}/${LINE_FILE}`))
+    refuse("not-a-file", `${LINE_FILE} is a folder, a file is needed`, {
+      file: LINE_FILE,
+      hint: "move the folder away",
+    });
   let ws = world.open.get(folder);
   if (ws) ws.refresh();
   else {
@@ -36,15 +50,11 @@ export async function perform(verb: Verb, args: Args, world: World, line: string
       return workspace;
     },
     stamp: (): Stamped => {
+      const { book, line } = call.workspace();
+      // Nothing can be written to it, so nothing is tried on half of it either.
+      if (book.damage.length > 0) throw new Refusal(book.problems());
       const at = args.text("at");
-      const ms =
-        at === undefined
-          ? undefined
-          : parseWhen(at, { timeZone: call.workspace().line.timeZone, nowMs: world.ports.now() });
-      if (ms !== undefined && ms > world.ports.now() + 5 * 60_000)
-        refuse("future-time", `--at ${at} lies in the future`, {
-          hint: "the book holds what happened; write the date for a time of yesterday, as 2026-03-11T23:40",
-        });
+      const ms = at === undefined ? undefined : whenOf(at, line.timeZone, world.ports.now());
       return {
         at: ms === undefined ? undefined : new Date(ms).toISOString(),
         by: personNamed(args.text("by")),
@@ -54,7 +64,29 @@ export async function perform(verb: Verb, args: Args, world: World, line: string
     readFile: world.readFile,
     resolve: world.resolve,
   };
-  return verb.run(call);
+  try {
+    return await verb.run(call);
+  } catch (error) {
+    throw asRefusal(error);
+  }
+}
+
+/** Clocks of two machines differ by so much. */
+const aheadMs = 5 * 60_000;
+/** A time without a date is yesterday's only where that is nearer than today's: a night shift after midnight. */
+const halfDayMs = 12 * 3_600_000;
+
+/** --at as ms since 1970. Refuses `future-time`, and what `parseWhen` refuses. */
+function whenOf(at: string, timeZone: string, nowMs: number): number {
+  const ms = parseWhen(at, { timeZone, nowMs });
+  const day = (one: number) => formatWhen(one, timeZone).slice(0, 10);
+  const hint = "the book holds what happened";
+  if (ms > nowMs + aheadMs) refuse("future-time", `--at ${at} lies in the future`, { hint });
+  if (!/\d-\d/.test(at) && day(ms) !== day(nowMs) && ms < nowMs - halfDayMs)
+    refuse("future-time", `--at ${at} lies in the future`, {
+      hint: `${hint}; write ${formatWhen(ms, timeZone).replace(" ", "T")} for yesterday`,
+    });
+  return ms;
 }
 
 /** --by: a name people can read, or nothing. */
@@ -91,6 +123,14 @@ export function problemText(p: Problem): string {
   const where = [p.file, p.row, p.column].filter((v) => v !== undefined).join(":");
   const lines = [`${where ? `${where}: ` : ""}${p.message}`, ...(p.hint ? [`  ${p.hint}`] : [])];
   return lines.map(safeText).join("\n");
+}
+
+/** What the file system answered where nobody expected it is no fault of the program: a folder for a file, say. */
+export function asRefusal(error: unknown): unknown {
+  if (!(error instanceof Error && "syscall" in error && "code" in error)) return error;
+  if ("path" in error && typeof error.path === "string") return fileRefusal(error, `use ${error.path}`, error.path);
+  // a read, unlike an opening, does not say of what
+  return new Refusal(fileRefusal(error, "read a file", "").problems.map(({ file: _, ...problem }) => problem));
 }
 
 export function errorText(error: unknown): string {

@@ -44,15 +44,54 @@ function syncFolder(path: string): void {
   }
 }
 
-/** Parents first, one by one: Node's own recursive way never ends in places like /proc, where nothing can be made. */
+/**
+ * Parents first, one by one: Node's own recursive way never ends in places like /proc, where nothing can be made. Where
+ * one fails, those made for it are taken away again.
+ */
 function makeFolder(path: string): void {
-  if (fs.statSync(path, { throwIfNoEntry: false })?.isDirectory()) return;
-  const parent = dirname(path);
-  if (parent !== path) makeFolder(parent);
+  const missing: string[] = [];
+  for (let at = path; !isFolder(at); at = dirname(at)) {
+    missing.unshift(at);
+    if (dirname(at) === at) break;
+  }
+  const made: string[] = [];
   try {
-    fs.mkdirSync(path);
+    for (const folder of missing) {
+      if (make(folder)) made.unshift(folder);
+    }
   } catch (error) {
-    if (codeOf(error) !== "EEXIST" || !fs.statSync(path).isDirectory()) throw error;
+    for (const folder of made) takeAway(folder);
+    throw error;
+  }
+}
+
+/** A file on the way to it makes it no folder either; making it then says so. */
+function isFolder(path: string): boolean {
+  try {
+    return fs.statSync(path, { throwIfNoEntry: false })?.isDirectory() ?? false;
+  } catch (error) {
+    if (["ENOTDIR", "ENAMETOOLONG"].includes(codeOf(error))) return false;
+    throw error;
+  }
+}
+
+/** False when another process was quicker. */
+function make(folder: string): boolean {
+  try {
+    fs.mkdirSync(folder);
+    return true;
+  } catch (error) {
+    if (codeOf(error) !== "EEXIST" || !isFolder(folder)) throw error;
+    return false;
+  }
+}
+
+/** Only if it is empty, and quietly: the error that led here is the one to be told. */
+function takeAway(folder: string): void {
+  try {
+    fs.rmdirSync(folder);
+  } catch (error) {
+    if (codeOf(error) === "") throw error;
   }
 }
 
@@ -62,7 +101,7 @@ export function nodeFiles(): FileSystem {
     read: (path) => fs.readFileSync(path),
     size: (path) => fs.statSync(path).size,
     exists: (path) => fs.existsSync(path),
-    isFolder: (path) => fs.statSync(path, { throwIfNoEntry: false })?.isDirectory() ?? false,
+    isFolder,
     list: (folder) => fs.readdirSync(folder),
     makeFolder,
     createExclusive: (path) => fs.openSync(path, "wx"),
@@ -106,10 +145,11 @@ function processStart(pid: number): string | null {
   }
 }
 
-/** The name of the person: COATWRIGHT_BY where set, else the account. */
+/** The name of the person: COATWRIGHT_BY where set, else the account; printable, and not longer than --by takes. */
 function person(): string {
   const { COATWRIGHT_BY, USER, USERNAME } = process.env;
-  return (COATWRIGHT_BY || USER || USERNAME || "unknown").trim() || "unknown";
+  const name = (COATWRIGHT_BY?.trim() || USER || USERNAME || "").replace(/\p{C}/gu, "");
+  return name.trim().slice(0, 100).trim() || "unknown";
 }
 
 /** The ports of the running program. */

@@ -49,8 +49,14 @@ export interface FilmStackAnswer {
   weighted_reflectance_percent: number;
   /** Null when the curve has no valley inside the range. */
   reflectance_minimum_nm: number | null;
-  /** Photon currents; under glass the four do not sum up: the rest is absorbed in glass and encapsulant. */
-  current_ma_cm2: { available: number; reflected: number; absorbed_in_film: number[]; into_substrate: number };
+  /** Photon currents; the parts add up to what is available. The cover is glass and encapsulant; without one it takes 0. */
+  current_ma_cm2: {
+    available: number;
+    reflected: number;
+    absorbed_in_cover: number;
+    absorbed_in_film: number[];
+    into_substrate: number;
+  };
   /** Null when a material is not known over the whole visible range, 380 to 780 nm. */
   colour: { xyz: Triple; lab: Triple; hex: string; illuminant: "D65"; observer: "CIE 1931 2 degree" } | null;
 }
@@ -59,7 +65,12 @@ interface StackSpectrum {
   reflectance: Float64Array;
   transmittance: Float64Array;
   absorptance: Float64Array[];
+  /** Of the cover in front; zeros without one. */
+  cover: Float64Array;
 }
+
+/** Rounding may carry a fraction 1e-16 beyond what a fraction can be. */
+const fractions = (values: Float64Array): number[] => Array.from(values, (v) => Math.min(1, Math.max(0, v)));
 
 /**
  * Computes a stack. Polished surfaces take any angle and polarisation; pyramids take light that comes straight down, on which
@@ -84,14 +95,15 @@ export function filmStack(description: FilmStackDescription): FilmStackAnswer {
   const spectrum = spectrumOf(description, grid);
   return {
     wavelength_nm: Array.from(grid),
-    reflectance: Array.from(spectrum.reflectance),
-    transmittance: Array.from(spectrum.transmittance),
-    absorptance: spectrum.absorptance.map((layer) => Array.from(layer)),
+    reflectance: fractions(spectrum.reflectance),
+    transmittance: fractions(spectrum.transmittance),
+    absorptance: spectrum.absorptance.map(fractions),
     weighted_reflectance_percent: 100 * weightedSum(weights.average, spectrum.reflectance),
     reflectance_minimum_nm: film.length === 0 ? null : minimumOf(description, grid),
     current_ma_cm2: {
       available: weights.availableMaCm2,
       reflected: weightedSum(weights.currentMaCm2, spectrum.reflectance),
+      absorbed_in_cover: weightedSum(weights.currentMaCm2, spectrum.cover),
       absorbed_in_film: spectrum.absorptance.map((layer) => weightedSum(weights.currentMaCm2, layer)),
       into_substrate: weightedSum(weights.currentMaCm2, spectrum.transmittance),
     },
@@ -129,6 +141,7 @@ function spectrumOf(description: FilmStackDescription, grid: Float64Array, cover
     reflectance: mean(s.reflectance, p.reflectance),
     transmittance: mean(s.transmittance, p.transmittance),
     absorptance: s.absorptance.map((layer, j) => mean(layer, p.absorptance[j])),
+    cover: mean(s.cover, p.cover),
   };
 }
 
@@ -148,6 +161,7 @@ function polarised(
     reflectance: new Float64Array(grid.length),
     transmittance: new Float64Array(grid.length),
     absorptance: film.map(() => new Float64Array(grid.length)),
+    cover: new Float64Array(grid.length),
   };
   for (let i = 0; i < grid.length; i++) {
     const layers = film.map((layer, j) => ({ n: indices[j].n[i], k: indices[j].k[i], thicknessNm: layer.thicknessNm }));
@@ -171,7 +185,10 @@ function polarised(
       spectrum.reflectance[i] += left;
     }
     if (!around.cover || !covered) continue;
-    const { reflectance, reach } = around.cover.over(i, spectrum.reflectance[i]);
+    const below = spectrum.reflectance[i];
+    const { reflectance, reach } = around.cover.over(i, below);
+    // What neither comes back out of the cover nor stays below it.
+    spectrum.cover[i] = 1 - reflectance - reach * (1 - below);
     spectrum.reflectance[i] = reflectance;
     spectrum.transmittance[i] *= reach;
     for (const layer of spectrum.absorptance) layer[i] *= reach;

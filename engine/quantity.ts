@@ -34,8 +34,14 @@ export function commaProblem(text: string): Problem | null {
   const number = /\d+(?:,\d+)+(?:\.\d+)?/.exec(text)?.[0];
   if (number === undefined) return null;
   if (/^[1-9]\d{0,2}(,\d{3})+(\.\d+)?$/.test(number)) {
-    const hint = `write ${text.replace(/(\d),(?=\d{3})/g, "$1")}, or with a decimal point if a fraction was meant`;
-    return { code: "thousands-comma", message: `${quoted(text)} has a comma between thousands`, hint };
+    const whole = text.replace(/(\d),(?=\d{3})/g, "$1");
+    const code = "thousands-comma";
+    if (/,.*[,.]/s.test(text)) {
+      const hint = `write ${whole}, or with a decimal point if a fraction was meant`;
+      return { code, message: `${quoted(text)} has a comma between thousands`, hint };
+    }
+    const hint = `write ${text.replace(",", ".")} with a decimal point, or ${whole}`;
+    return { code, message: `${quoted(text)} has a comma, which can be read in two ways`, hint };
   }
   const hint = `write ${text.replace(/(\d),(?=\d)/g, "$1.")}, with a decimal point`;
   return { code: "decimal-comma", message: `${quoted(text)} has a decimal comma`, hint };

@@ -43,6 +43,7 @@ export type { FileSystem, Ports } from "./ports.ts";
 export { changeAt } from "./record/change-steps.ts";
 export { openChange } from "./record/changes.ts";
 export type { Quantity, StepSettings } from "./record/entries.ts";
+export { fileRefusal } from "./record/file-trouble.ts";
 export { changeId, parseChangeId, parseProposalId, proposalId } from "./record/ids.ts";
 export { safeText } from "./record/safe-text.ts";
 export { stepsOf } from "./record/steps.ts";

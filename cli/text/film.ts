@@ -19,7 +19,7 @@ export function filmText(
   return [
     `weighted reflectance ${answer.weighted_reflectance_percent.toFixed(3)} % (${weight}, ${light.fromNm}-${light.toNm} nm)`,
     `reflectance minimum  ${minimum === null ? "none inside the range" : `${minimum.toFixed(1)} nm`}`,
-    `current, mA/cm2      available ${c.available.toFixed(3)}: reflected ${c.reflected.toFixed(3)}, absorbed in the film ${c.absorbed_in_film.map((a) => a.toFixed(3)).join(" + ") || "0"}, into the substrate ${c.into_substrate.toFixed(3)}`,
+    `current, mA/cm2      available ${c.available.toFixed(3)}: reflected ${c.reflected.toFixed(3)},${c.absorbed_in_cover > 0 ? ` absorbed in glass and encapsulant ${c.absorbed_in_cover.toFixed(3)},` : ""} absorbed in the film ${c.absorbed_in_film.map((a) => a.toFixed(3)).join(" + ") || "0"}, into the substrate ${c.into_substrate.toFixed(3)}`,
     `colour               ${answer.colour ? `${answer.colour.hex} (${answer.colour.illuminant}, ${answer.colour.observer})` : "not given: a material is not known over 380-780 nm"}`,
     "",
     "     nm     R %     T %",

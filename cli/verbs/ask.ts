@@ -75,7 +75,7 @@ export const askVerbs: Verb[] = [
         ws,
         chamber.name,
         recipe,
-        parseSet(call.args.settings("set"), chamber),
+        parseSet(call.args.settings("set"), chamber, { allowOutside: true }),
       );
       const document = {
         chamber: chamber.name,
@@ -93,19 +93,22 @@ export const askVerbs: Verb[] = [
     name: "chamber",
     does: "the calibrated model: slopes, offsets, drift, what the data cannot tell, alarms; without a name the whole line",
     words: [word("name", "the chamber", false)],
-    flags: [],
-    examples: ["coatwright chamber A2"],
+    flags: [flag("recipe", "NAME", "the recipe to look at it with; that of its latest run when left out")],
+    examples: ["coatwright chamber A2", "coatwright chamber A2 --recipe blue"],
     writes: false,
     run: async (call) => {
       const ws = call.workspace();
       const name = call.args.text("name");
+      const recipe = call.args.text("recipe");
       if (name === undefined) {
+        if (recipe !== undefined)
+          refuse("missing-argument", "--recipe needs the chamber too", { hint: "coatwright chamber A2 --recipe blue" });
         const { overviewText } = await import("../text/overview.ts");
         const line = overview(ws);
         return { document: lineDocument(line), text: overviewText(line, { colour: false, ascii: false, width: 100 }) };
       }
       ws.chamber(name);
-      const view = chamberView(ws, name);
+      const view = chamberView(ws, name, recipe);
       const model = chamberModel(ws, name);
       const document = {
         chamber: name,

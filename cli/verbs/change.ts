@@ -20,7 +20,12 @@ function changed(done: Changed, head: string, next: string, more: Record<string,
   const document = receipt
     ? { change: done.change, entry: receipt.seq, hash: receipt.hash, warnings: done.warnings, ...more }
     : { would: "change", ...more };
-  const text = [receipt ? head : `would: ${head}`, ...done.sheet.map((l) => `  ${l}`), ...done.warnings, next]
+  const text = [
+    receipt ? head : `dry run, nothing is written; it would say: ${head}`,
+    ...done.sheet.map((l) => `  ${l}`),
+    ...done.warnings,
+    receipt ? next : "",
+  ]
     .filter(Boolean)
     .join("\n");
   return { document, text, notices: done.notices };
@@ -78,12 +83,16 @@ export const changeVerbs: Verb[] = [
     writes: true,
     run: async (call) => {
       const ws = call.workspace();
+      const stamp = call.stamp();
       const number = parseChangeId(call.args.need("change"));
       const chamber = ws.chamber(changeAt(ws.ledger, number).chamber);
       const read = parseSet(call.args.settings("set"), chamber, { allowOutside: true });
       const readBack = read.size > 0 ? stepsOf(Object.entries(asQuantities(read, chamber))) : [];
-      const done = await enter(ws, { change: number, readBack, ...call.stamp() });
-      return changed(done, `${done.change} is in force.`, `run and measure, then: coatwright close ${done.change}`);
+      const done = await enter(ws, { change: number, readBack, ...stamp });
+      const next = `run and measure, then: coatwright close ${done.change}`;
+      return changed(done, `${done.change} is in force.`, next, {
+        ...(read.size > 0 ? { read_back: asQuantities(read, chamber) } : {}),
+      });
     },
   },
   {

@@ -56,7 +56,7 @@ export const fileVerbs: Verb[] = [
           ...warnings.map((w) => `note: ${w}`),
           ...said,
           problems.length === 0
-            ? `all good: ${entries} entries, head ${head}`
+            ? `all good: ${entries} ${entries === 1 ? "entry" : "entries"}, head ${head}`
             : `${problems.length} problem${problems.length > 1 ? "s" : ""}`,
         ].join("\n"),
         exit: problems.length === 0 ? 0 : 3,

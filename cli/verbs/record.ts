@@ -9,6 +9,7 @@ import {
   recordRecipe,
   recordRun,
 } from "../../recipes/index.ts";
+import { draftWords } from "./draft-words.ts";
 import { readSites } from "./sites.ts";
 import { type Call, chamberFlag, flag, type Outcome, settingsFlag, type Verb, word } from "./verb.ts";
 
@@ -51,22 +52,6 @@ function runGiven(call: Call): RunGiven {
     note: args.text("note"),
     ...(sites ? { sites: readSites(call.readFile(sites), sites) } : {}),
   };
-}
-
-/** What would be written, a line a field, for --dry-run. */
-function draftWords(draft: { kind: string; data: object }): string[] {
-  const words = (value: unknown): string =>
-    typeof value === "object" && value !== null
-      ? "value" in value && "unit" in value
-        ? `${value.value} ${value.unit}`
-        : Object.entries(value)
-            .map(([k, v]) => (/^\d+$/.test(k) ? words(v) : `${k} ${words(v)}`))
-            .join(", ")
-      : String(value);
-  return [
-    `would record a ${draft.kind}:`,
-    ...Object.entries(draft.data).map(([k, v]) => `  ${k.replaceAll("_", " ")}: ${words(v) || "none"}`),
-  ];
 }
 
 /** Entry and hash, or what would be written. */
@@ -227,9 +212,11 @@ export const recordVerbs: Verb[] = [
     examples: ["coatwright correct 118 thickness=84.1nm --reason 'digits swapped'"],
     writes: true,
     run: async (call) => {
-      const number = Number(call.args.need("entry").replace(/^#/, ""));
-      if (!Number.isInteger(number) || number < 0)
-        refuse("no-such-entry", `"${call.args.need("entry")}" is not the number of an entry`);
+      const stamp = call.stamp();
+      const entryGiven = call.args.need("entry").trim();
+      if (!/^#?\d{1,9}$/.test(entryGiven))
+        refuse("no-such-entry", `"${entryGiven}" is not the number of an entry`, { hint: "as in 118, or #118" });
+      const number = Number(entryGiven.replace("#", ""));
       const typed = call.args.settings("fields");
       const pairs = Array.isArray(typed)
         ? (typed as readonly string[]).map((one): [string, string] => {
@@ -245,9 +232,9 @@ export const recordVerbs: Verb[] = [
       const { correctEntry } = await correcting();
       const done = await correctEntry(call.workspace(), {
         entry: number,
-        given: Object.fromEntries(pairs),
+        given: pairs,
         reason: call.args.need("reason"),
-        ...call.stamp(),
+        ...stamp,
       });
       const { entry, hash, rests, notices, drafts } = done;
       const rest =

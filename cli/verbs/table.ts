@@ -47,7 +47,7 @@ export function findVerb(argv: readonly string[]): { verb: Verb; rest: string[] 
 function unknown(argv: readonly string[]): [string, { hint: string }] {
   if (argv[0] === "record")
     return [
-      argv[1] ? `there is no record ${argv[1]}` : "record what?",
+      argv[1] && !argv[1].startsWith("-") ? `there is no record ${argv[1]}` : "record what?",
       { hint: "run, recipe, clean, precoat, service or note" },
     ];
   const near = nearestWord(

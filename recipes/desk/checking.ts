@@ -2,6 +2,9 @@
 import { type Problem, Refusal } from "../../engine/index.ts";
 import { waferLight } from "../line/line-wafer.ts";
 import { readLine } from "../line/read-line.ts";
+import { BOOK } from "../record/read-book.ts";
+import { safeText } from "../record/safe-text.ts";
+import { namesWithoutView } from "../record/views.ts";
 import { editedViews } from "./views.ts";
 import { LINE_FILE, type Workspace } from "./workspace.ts";
 
@@ -21,6 +24,24 @@ function withPinnedFacet(ws: Workspace, said: string[]): string[] {
   if (!facet || facet.runs === 0) return said;
   const pinned = `The facet factor is pinned at ${facet.mean.toFixed(3)} sd ${facet.sd.toFixed(3)} by ${facet.runs} reflectance minima on textured cells.`;
   return [...said.filter((sentence) => !sentence.startsWith("The facet factor alone spans")), pinned];
+}
+
+/** Views edited by hand, and what keeps views from being written or read. */
+function tellViews(ws: Workspace, problems: Problem[], warnings: string[]): void {
+  for (const { what, name, entry } of namesWithoutView(ws.ledger))
+    problems.push({
+      code: "bad-name",
+      message: `entry ${entry} names a ${what} "${safeText(name)}", which cannot be part of a file name: it has no view`,
+      file: BOOK,
+      row: entry + 1,
+      hint: "correct its runs (coatwright correct), and go on under a proper name",
+    });
+  try {
+    warnings.push(...editedViews(ws));
+  } catch (error) {
+    if (!(error instanceof Refusal)) throw error;
+    problems.push(...error.problems);
+  }
 }
 
 export function checkLine(ws: Workspace): Checked {
@@ -53,11 +74,7 @@ export function checkLine(ws: Workspace): Checked {
         warnings.push(
           `the book has entries of chamber ${chamber}, which line.yaml does not declare: they are left aside`,
         );
-    if (book.damage.length === 0) warnings.push(...editedViews(ws));
-    else
-      warnings.push(
-        "a damaged book is put back from a copy, or looked at by a person: nothing is written to it until then",
-      );
+    if (book.damage.length === 0) tellViews(ws, problems, warnings);
     said = withPinnedFacet(ws, said);
   }
   if (ledger.lineFile !== null && ledger.lineFile !== new TextDecoder().decode(ws.readBeside(LINE_FILE)))

@@ -1,4 +1,5 @@
 /** Importing many runs at once: planned on the ledger under the lock, written in one go or not at all. */
+import { Refusal } from "../../engine/index.ts";
 import { readYaml } from "../line/yaml.ts";
 import { type ImportPlan, planImport } from "../record/import/import.ts";
 import { type ImportMap, readImportMap } from "../record/import/map-file.ts";
@@ -22,9 +23,19 @@ export interface Imported {
 }
 
 function mapFor(ws: Workspace, given: ImportGiven["map"]): ImportMap | undefined {
-  if (given) return readImportMap(readYaml(given.bytes, given.file).root, given.file);
+  if (given) return mapFrom(given.bytes, given.file);
   if (!ws.ports.files.exists(`${ws.folder}/${MAP_FILE}`)) return undefined;
-  return readImportMap(readYaml(ws.readBeside(MAP_FILE), MAP_FILE).root, MAP_FILE);
+  return mapFrom(ws.readBeside(MAP_FILE), MAP_FILE);
+}
+
+/** Throws what `readYaml` and `readImportMap` throw, by row and column. */
+function mapFrom(bytes: Uint8Array, file: string): ImportMap {
+  const yaml = readYaml(bytes, file);
+  if (yaml.problems.length > 0) throw new Refusal(yaml.problems);
+  return readImportMap(yaml.root, file, (path, at) => {
+    const { row, column } = yaml.problem(path, "", "", undefined, at);
+    return { row, column };
+  });
 }
 
 export async function importRuns(
@@ -45,12 +56,14 @@ export async function importRuns(
     },
     { dryRun: how.dryRun || plan.entries.length === 0 },
   );
-  const entries = written.receipts.map((r) => r.seq);
+  // the first entry says that an import follows; the rows are what was imported
+  const entries = written.receipts.slice(1).map((r) => r.seq);
+  const [first, last] = [entries[0], entries.at(-1)];
   const { columns, ignored, rows, chambers, skipped, notes } = plan;
   return {
     document: {
-      imported: entries.length === 0 ? 0 : entries.length - 1,
-      entries: entries.length === 0 ? null : { first: entries[0], last: entries.at(-1) },
+      imported: entries.length,
+      entries: entries.length === 0 ? null : { first, last },
       rows,
       skipped,
       columns,
@@ -58,7 +71,7 @@ export async function importRuns(
       chambers,
       notes,
     },
-    text: `${plan.text}\n${how.dryRun ? "dry run: nothing was imported" : entries.length === 0 ? "nothing new: nothing was imported" : `imported ${entries.length - 1} entries, #${entries[0]} to #${entries.at(-1)}`}`,
+    text: `${plan.text}\n${how.dryRun ? "dry run: nothing was imported" : entries.length === 0 ? "nothing new: nothing was imported" : entries.length === 1 ? `imported 1 entry, #${first}` : `imported ${entries.length} entries, #${first} to #${last}`}`,
     notices: written.notices,
   };
 }

@@ -71,8 +71,14 @@ export class Book {
 
   /** Damage as problems to be shown by `check`. */
   problems(): Problem[] {
-    return this.damage.map((one) =>
-      bookProblem("damaged-book", `${one.message} (${one.kind}, byte ${one.offset})`, one.row),
+    const wayOut = "put the file back from a copy, or have a person look; nothing is written to it until then";
+    return this.damage.map((one, i) =>
+      bookProblem(
+        "damaged-book",
+        `${one.message} (${one.kind}, byte ${one.offset})`,
+        one.row,
+        i === 0 ? wayOut : undefined,
+      ),
     );
   }
 

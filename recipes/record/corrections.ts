@@ -3,9 +3,9 @@
  * entry of its kind. Runs, readings, cleans, precoats and services can be corrected.
  *
  * Fields of a run: `at`, any of its own (chamber, recipe, step, count, since_clean, kind, boat, position, note), a
- * reading's (index, thickness_nm, ... of the reading entered with the run), or a setting by its flat name with a
- * {value, unit}. Of a reading: `at`, `run`, `note`, or the reading's own. Of the others: `at` and their own. null takes a
- * value away.
+ * reading's (index, thickness_nm, ... of the reading entered with the run that has it, else of the one that reads such
+ * things), or a setting by its flat name with a {value, unit}, also one that was left out. Of a reading: `at`, `run`,
+ * `note`, or the reading's own. Of the others: `at` and their own. null takes a value away.
  */
 import { type Problem, Refusal } from "../../engine/index.ts";
 import type { AnyEntry, Entry, EntryData, Quantity, Reading } from "./entries.ts";
@@ -58,6 +58,8 @@ export function corrected(
         else data = withField(original.kind, data, name, value);
       }
     }
+    // a reading of which everything was taken away is no reading
+    if ("readings" in data) data = { ...data, readings: data.readings.filter(readsSomething) };
     const complaint = checkData(original.kind, data);
     if (complaint) return fault("bad-entry", `entry ${number} would not be valid with this correction: ${complaint}`);
     return { original, data, at };
@@ -109,15 +111,39 @@ function withField(
 function runField(run: EntryData["run"], name: string, value: unknown): EntryData["run"] {
   if (RUN_FIELDS.has(name)) return replaced(run, name, value);
   if (READING_FIELDS.has(name)) {
-    const [first, ...others] = run.readings;
-    if (!first) return fault("no-such-field", `the run has no reading of its own`, "use record reading");
-    return { ...run, readings: [replaced<Reading>(first, name, value), ...others] };
+    const at = readingWith(run.readings, name);
+    return { ...run, readings: run.readings.map((one, i) => (i === at ? replaced<Reading>(one, name, value) : one)) };
   }
   const flat = flatSettings(run.steps);
-  if (!flat.has(name)) return noField("run", name);
-  if (!isQuantity(value)) return fault("bad-entry", `${name} needs a value with a unit`);
-  flat.set(name, value);
+  if (!flat.has(name) && !isQuantity(value)) return noField("run", name);
+  if (value === null) flat.delete(name);
+  else if (isQuantity(value)) flat.set(name, value);
+  else return fault("bad-entry", `${name} needs a value with a unit`);
   return { ...run, steps: stepsOf(flat) };
+}
+
+const FILM = ["index", "thickness_nm"];
+const LIGHT = ["weighted_reflectance_percent", "reflectance_minimum_nm"];
+
+const readsSomething = (reading: Reading): boolean =>
+  [...FILM, ...LIGHT].some((name) => name in reading) || reading.spectrum !== undefined;
+
+/** Which of a run's readings a field belongs to: film and light are read by different gauges. */
+function readingWith(readings: readonly Reading[], name: string): number {
+  const later = "a reading that comes after its run cannot be entered yet";
+  if (readings.length === 0) return fault("no-such-field", "the run has no reading of its own", later);
+  const places = (is: (reading: Reading) => boolean): number[] => readings.flatMap((one, i) => (is(one) ? [i] : []));
+  const having = places((one) => name in one);
+  if (having.length === 1) return having[0];
+  const kind = [FILM, LIGHT].find((names) => names.includes(name));
+  if (kind) {
+    const alike = places((one) => kind.some((other) => other in one));
+    const emptied = places((one) => !readsSomething(one));
+    const [found = emptied[0]] = alike;
+    if (found === undefined) return fault("no-such-field", `no reading of the run reads ${name}`, later);
+    if (alike.length < 2) return found;
+  } else if (readings.length === 1) return 0;
+  return fault("no-such-field", `the run has ${readings.length} readings, and ${name} could be of more than one`);
 }
 
 function isQuantity(value: unknown): value is Quantity {

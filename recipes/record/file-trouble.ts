@@ -14,6 +14,15 @@ export function errorCode(error: unknown): string {
 
 const FULL = new Set(["ENOSPC", "EDQUOT", "EFBIG"]);
 const FORBIDDEN = new Set(["EROFS", "EACCES", "EPERM"]);
+/** Trouble with what stands on the path: what is the matter, and what would do. */
+const IN_THE_WAY: Readonly<Record<string, readonly [message: string, hint: string]>> = {
+  EEXIST: ["a file of that name is in the way", "name another, or move the file away"],
+  EISDIR: ["it is a folder, where a file is needed", "move the folder away"],
+  ENOTDIR: ["a part of the path is a file, where a folder is needed", "name another path, or move the file away"],
+  ENOENT: ["the path does not exist, or nothing can be made there", "check how the path is written"],
+  ENAMETOOLONG: ["the name is too long", "choose a shorter one"],
+  ELOOP: ["its links lead round in a circle", "check the links on the path"],
+};
 
 /**
  * The refusal for a failed file operation; `doing` completes "could not ...", `bytes` is the space it needed. Errors
@@ -31,6 +40,8 @@ export function fileRefusal(error: unknown, doing: string, file: string, bytes =
   if (FORBIDDEN.has(code)) {
     return problem("read-only", `it may not be written here (${code})`, "check the folder's permissions and its mount");
   }
+  const way = IN_THE_WAY[code];
+  if (way) return problem("io-error", `${way[0]} (${code})`, way[1]);
   return problem("io-error", `the file system answered ${code}`, "check the disk or the network share, then `check`");
 }
 

@@ -174,6 +174,11 @@ function readHolder(path: string, ports: Ports): Holder | "unreadable" | "gone" 
     text = Buffer.from(ports.files.read(path)).toString("utf8");
   } catch (error) {
     if (errorCode(error) === "ENOENT") return "gone";
+    if (errorCode(error) === "EISDIR")
+      refuse("not-a-lock", "book.lock is a folder, where writers put their lock", {
+        file: LOCK,
+        hint: "nobody writes while it is there; remove or rename it",
+      });
     throw fileRefusal(error, "read the lock of the line", path);
   }
   try {

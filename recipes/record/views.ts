@@ -108,13 +108,30 @@ export function viewsOf(ledger: Ledger): View[] {
   );
 }
 
+/** Names in the book that cannot be part of a path and so have no view: each with the first entry that uses it. */
+export function namesWithoutView(ledger: Ledger): { what: "chamber" | "recipe"; name: string; entry: number }[] {
+  const found = new Map<string, { what: "chamber" | "recipe"; name: string; entry: number }>();
+  const tell = (what: "chamber" | "recipe", name: string, entry: number): void => {
+    const key = `${what} ${name}`;
+    if (!isFileName(name) && entry < (found.get(key)?.entry ?? Number.POSITIVE_INFINITY))
+      found.set(key, { what, name, entry });
+  };
+  for (const { chamber, timeline } of ledger.chambers.values()) {
+    for (const event of timeline) {
+      tell("chamber", chamber, event.seq);
+      if (event.kind === "run" || event.kind === "version") tell("recipe", event.recipe, event.seq);
+    }
+  }
+  return [...found.values()];
+}
+
 /** How the view on disk compares: the text the book gives now, one it gave before, or neither. Line ends do not count. */
 export function viewState(folder: string, ports: Pick<Ports, "files">, ledger: Ledger, view: View): ViewState {
   let found: string;
   try {
     found = Buffer.from(ports.files.read(inFolder(folder, view.path))).toString("utf8");
   } catch (error) {
-    if (errorCode(error) === "ENOENT") return "missing";
+    if (["ENOENT", "ENOTDIR"].includes(errorCode(error))) return "missing";
     throw fileRefusal(error, `read ${view.path}`, view.path);
   }
   const plain = found.replace(/\r\n/g, "\n");

@@ -39,6 +39,7 @@ describe("a stack of films", () => {
       "available",
       "reflected",
       "absorbed_in_film",
+      "absorbed_in_cover",
       "into_substrate",
     ]);
     expect(Object.keys(answer.colour ?? {})).toEqual(["xyz", "lab", "hex", "illuminant", "observer"]);

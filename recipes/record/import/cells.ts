@@ -1,5 +1,7 @@
 /** What one cell of an import says: a number with the declared decimal sign, a word out of a few, a whole number. */
 import { type Dimension, refuse } from "../../../engine/index.ts";
+import { nameProblem } from "../../line/names.ts";
+import { safeText } from "../safe-text.ts";
 
 const NUMBER = /^[+-]?(?:\d+\.?\d*|\.\d+)(?:[eE][+-]?\d+)?$/;
 
@@ -52,6 +54,23 @@ export function readText(cell: string, most = 4000): string {
   return cell;
 }
 
+/** Words that mean something of their own where names become keys. */
+const POISONED = ["__proto__", "constructor", "prototype"];
+
+/** The name of a recipe or a step, which becomes part of a path and a key. Throws `bad-name`. */
+export function readName(cell: string): string {
+  const complaint = nameProblem(cell.length > 80 ? `${cell.slice(0, 77)}...` : cell);
+  if (complaint) refuse("bad-name", complaint.message, { hint: complaint.hint });
+  if (POISONED.includes(cell)) refuse("bad-name", `"${cell}" cannot be a name here`, { hint: "choose another" });
+  return cell;
+}
+
+/** Who did it: as for --by. Throws `bad-name`. */
+export function readPerson(cell: string): string {
+  if (cell.length <= 100 && safeText(cell) === cell) return cell;
+  return refuse("bad-name", `${shown(safeText(cell))} is not a name`, { hint: "1 to 100 printable characters" });
+}
+
 /**
  * What a setting can be at all, canonical units: beyond it the column or the unit is wrong. Wide on purpose: the declared
  * range is another matter, since history may lie outside it.
@@ -92,10 +111,18 @@ export const MEASURED = Object.keys(FILM) as Measured[];
 
 /** A measured value. Throws `impossible-value` and what `readNumber` throws. */
 export function readMeasured(cell: string, what: Measured, decimal: "." | ","): number {
-  const value = readNumber(cell, decimal);
+  return possibleReading(readNumber(cell, decimal), what, cell);
+}
+
+/** The value, if a film can read so. Throws `impossible-value`, quoting what was written. */
+export function possibleReading(value: number, what: Measured, written: string): number {
   const { low, high, unit } = FILM[what];
   if (value >= low && value <= high) return value;
-  return refuse("impossible-value", `${what} ${shown(cell)} is impossible: it must lie in ${low} to ${high}${unit}`, {
-    hint: what === "index" && value > high ? "is it the thickness?" : "is it the right column and unit?",
-  });
+  return refuse(
+    "impossible-value",
+    `${what} ${shown(written)} is impossible: it must lie in ${low} to ${high}${unit}`,
+    {
+      hint: what === "index" && value > high ? "is it the thickness?" : "is it the right column and unit?",
+    },
+  );
 }

@@ -5,6 +5,7 @@
  */
 import { nearestWord, unitsOf } from "../../../engine/index.ts";
 import type { Line, Setting } from "../../line/line.ts";
+import { readName } from "./cells.ts";
 import type { ImportMap } from "./map-file.ts";
 import type { Problems } from "./problems.ts";
 import type { Table } from "./table.ts";
@@ -111,7 +112,9 @@ export function readColumns(table: Table, line: Line, map: ImportMap, problems: 
     const dot = word.indexOf(".");
     const read = readSetting(word.slice(dot + 1), line);
     if (read?.unit != null) {
-      const step = dot < 0 ? "" : `${(map.columns.get(lower) ?? heading).slice(0, dot)}.`;
+      const layer = dot < 0 ? null : (map.columns.get(lower) ?? heading).slice(0, dot);
+      if (layer !== null && !problems.tried({ row, column }, () => readName(layer))) continue;
+      const step = layer === null ? "" : `${layer}.`;
       const name = step + read.setting.name;
       const other = columns.settings.find((one) => one.name === name);
       if (other) {
@@ -125,7 +128,8 @@ export function readColumns(table: Table, line: Line, map: ImportMap, problems: 
       columns.understood.push({ column, heading, meaning: read.unit ? `${name}, ${read.unit}` : name });
       continue;
     }
-    tellUnknown(heading, column, row, read, words, problems);
+    const shown = map.columns.has(lower) ? `${heading}", mapped to "${map.columns.get(lower)}` : heading;
+    tellUnknown(shown, word, column, row, read, words, problems);
   }
   for (const heading of [...map.columns.keys(), ...map.ignore]) {
     if (!mapped.has(heading)) {
@@ -143,6 +147,7 @@ export function readColumns(table: Table, line: Line, map: ImportMap, problems: 
 
 function tellUnknown(
   heading: string,
+  lower: string,
   column: number,
   row: number,
   read: ReturnType<typeof readSetting>,
@@ -161,7 +166,6 @@ function tellUnknown(
       });
     return;
   }
-  const lower = heading.toLowerCase();
   const bare = words.find((word) => word === `${lower}_nm` || word === `${lower}_percent`);
   if (bare) {
     problems.add("missing-unit", `column "${heading}" has no unit`, { ...place, hint: `write ${bare}` });

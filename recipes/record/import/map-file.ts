@@ -3,7 +3,7 @@
  * separated. The file is YAML; it arrives here already read.
  */
 import * as z from "zod/mini";
-import { type Problem, Refusal } from "../../../engine/index.ts";
+import { nearestWord, type Problem, Refusal } from "../../../engine/index.ts";
 
 export interface ImportMap {
   /** Our column by the file's heading, headings in lower case: "sih4 flow" -> "silane_sccm". */
@@ -73,6 +73,16 @@ const shape = z.strictObject({
   time_zone: z.optional(z.string()),
 });
 
+const keyHint = (key: string): string => {
+  const near = nearestWord(key, KEYS);
+  return near ? `did you mean ${near}?` : `keys are ${KEYS.join(", ")}`;
+};
+
+function lookedUp<T>(table: Record<string, T>, given: string): T | undefined {
+  const word = given.toLowerCase();
+  return Object.hasOwn(table, word) ? table[word] : undefined;
+}
+
 function zoneExists(zone: string): boolean {
   try {
     new Intl.DateTimeFormat("en", { timeZone: zone });
@@ -83,24 +93,57 @@ function zoneExists(zone: string): boolean {
   }
 }
 
-/** Reads a map that was parsed from YAML. Throws `bad-import-map` with every problem, naming the key. */
-export function readImportMap(value: unknown, file = "import-map.yaml"): ImportMap {
+/** What each key wants, for hints. */
+const WANTED: Record<keyof z.output<typeof shape>, string> = {
+  columns: "a heading of the file and what it means a row, as in SiH4 flow: silane_sccm",
+  ignore: "one heading, or a list, as in [ operator, shift ]",
+  skip_lines: "a whole number from 0 to 10000",
+  decimal: "point or comma",
+  separator: 'comma, semicolon, tab, or "," ";"',
+  encoding: "utf-8, utf-16le or windows-1252",
+  time_zone: "as in Europe/Lisbon",
+};
+const KEYS = Object.keys(WANTED);
+
+type MapPath = readonly (string | number)[];
+/** Where a path of the map stands in its file, if that is known. */
+type Place = (path: MapPath, at: "value" | "key") => { row?: number; column?: number };
+
+/** Reads a map that was parsed from YAML. Throws `bad-import-map` with every problem, naming the key and its place. */
+export function readImportMap(value: unknown, file = "import-map.yaml", place: Place = () => ({})): ImportMap {
   const parsed = shape.safeParse(value ?? {});
   const problems: Problem[] = [];
-  const wrong = (message: string, hint?: string): void => {
-    problems.push({ code: "bad-import-map", message, file, ...(hint ? { hint } : {}) });
+  const wrong = (path: MapPath, message: string, hint?: string, at: "value" | "key" = "value"): void => {
+    problems.push({ code: "bad-import-map", message, file, ...place(path, at), ...(hint ? { hint } : {}) });
   };
   if (!parsed.success) {
-    for (const issue of parsed.error.issues) wrong(`${issue.path.join(".") || "the map"}: ${issue.message}`);
+    for (const issue of parsed.error.issues) {
+      const path = issue.path as (string | number)[];
+      if (issue.code === "unrecognized_keys") {
+        for (const key of issue.keys)
+          wrong([...path, key], `"${key}" is not a key of an import map`, keyHint(key), "key");
+        continue;
+      }
+      const key = KEYS.find((one) => one === path[0]) as keyof typeof WANTED | undefined;
+      if (key) wrong(path, `${path.join(": ")}: this cannot be read`, `${key} takes ${WANTED[key]}`);
+      else wrong(path, "the map must hold keys and values", `keys are ${KEYS.join(", ")}; ${WANTED.columns}`);
+    }
     throw new Refusal(problems);
   }
   const { data } = parsed;
-  const separator = data.separator === undefined ? null : SEPARATORS[data.separator.toLowerCase()];
-  if (separator === undefined) wrong(`separator: "${data.separator}" is not one`, 'comma, semicolon, tab, or "," ";"');
-  const encoding = ENCODINGS[(data.encoding ?? "utf-8").toLowerCase()];
-  if (encoding === undefined) wrong(`encoding: "${data.encoding}" is not known`, "utf-8, utf-16le or windows-1252");
+  const separator = data.separator === undefined ? null : lookedUp(SEPARATORS, data.separator);
+  if (separator === undefined) wrong(["separator"], `separator: "${data.separator}" is not one`, WANTED.separator);
+  const encoding = lookedUp(ENCODINGS, data.encoding ?? "utf-8");
+  if (encoding === undefined) wrong(["encoding"], `encoding: "${data.encoding}" is not known`, WANTED.encoding);
   if (data.time_zone !== undefined && !zoneExists(data.time_zone)) {
-    wrong(`time_zone: "${data.time_zone}" is not a time zone`, "as in Europe/Lisbon");
+    wrong(["time_zone"], `time_zone: "${data.time_zone}" is not a time zone`, WANTED.time_zone);
+  }
+  const seen = new Set<string>();
+  for (const heading of Object.keys(data.columns ?? {})) {
+    const lower = heading.trim().toLowerCase();
+    if (seen.has(lower))
+      wrong(["columns", heading], `columns: "${heading}" stands there twice`, "capitals do not count", "key");
+    seen.add(lower);
   }
   if (problems.length > 0) throw new Refusal(problems);
   return {

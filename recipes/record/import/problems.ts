@@ -35,6 +35,17 @@ export class Problems {
       this.add(code, message, { ...place, ...(hint ? { hint } : {}) });
   }
 
+  /** True when `check` refuses nothing; what it refuses is taken over with this place. */
+  tried(place: { row?: number; column?: number }, check: () => unknown): boolean {
+    try {
+      check();
+      return true;
+    } catch (error) {
+      this.take(error, place);
+      return false;
+    }
+  }
+
   /** Throws a Refusal with all of it, if there is any. */
   throwIfAny(): void {
     if (!this.any) return;

@@ -4,7 +4,6 @@
  */
 import { refuse, toCanonical } from "../../../engine/index.ts";
 import type { Chamber, Gauge, Line } from "../../line/line.ts";
-import { nameProblem } from "../../line/names.ts";
 import { asQuantity, refuseImpossible as refuseFarOff } from "../../line/settings.ts";
 import { parseWhen } from "../../line/zoned-time.ts";
 import type { AnyDraft, Quantity, Reading } from "../entries.ts";
@@ -18,7 +17,9 @@ import {
   type Measured,
   readCount,
   readMeasured,
+  readName,
   readNumber,
+  readPerson,
   readText,
   readWord,
   refuseImpossible,
@@ -69,7 +70,7 @@ export function readRow(row: Row, context: RowContext): RowRead | null {
   const event = named ?? "run";
   const chamber = reader.needed("chamber", (cell) => chamberOf(context.line, cell));
   const atMs = reader.needed("at", (cell) => instant(cell, context));
-  const by = reader.optional("by", (cell) => readText(cell, 200));
+  const by = reader.optional("by", readPerson);
   if (lost || !chamber || atMs === undefined) return null;
   const head = { at: bookTime(atMs), ...(by === undefined ? {} : { by }) };
   const draft =
@@ -166,9 +167,7 @@ function otherDraft(
 
 function runDraft(cells: Cells, context: RowContext, chamber: Chamber, atMs: number, head: Head): AnyDraft | null {
   const { ledger, problems, file, map } = context;
-  const recipe =
-    cells.optional("recipe", (cell) => recipeName(readText(cell, 64))) ??
-    defaultRecipe(context, chamber.name, cells.row.row);
+  const recipe = recipeOf(cells, context, chamber.name);
   if (recipe === null) return null;
   const force = recipeInForce(ledger, chamber.name, recipe, atMs);
   const settings = new Map<string, Quantity>(force ? flatSettings(force.steps) : []);
@@ -220,10 +219,18 @@ function runDraft(cells: Cells, context: RowContext, chamber: Chamber, atMs: num
 function textFields(cells: Cells): Partial<Record<"step" | "boat" | "position" | "note", string>> {
   const texts: Partial<Record<"step" | "boat" | "position" | "note", string>> = {};
   for (const field of ["step", "boat", "position", "note"] as const) {
-    const text = cells.optional(field, (cell) => readText(cell, field === "step" ? 64 : 4000));
+    const text = cells.optional(field, field === "step" ? readName : (cell) => readText(cell));
     if (text !== undefined) texts[field] = text;
   }
   return texts;
+}
+
+/** The recipe named in the row, else the chamber's own; null when it names none that will do. */
+function recipeOf(cells: Cells, context: RowContext, chamber: string): string | null {
+  const before = context.problems.count;
+  const named = cells.optional("recipe", readName);
+  if (named !== undefined) return named;
+  return context.problems.count > before ? null : defaultRecipe(context, chamber, cells.row.row);
 }
 
 function defaultRecipe(context: RowContext, chamber: string, row: number): string | null {
@@ -241,13 +248,6 @@ function defaultRecipe(context: RowContext, chamber: string, row: number): strin
   }
   // told once for the chamber; the rows are lost all the same
   return null;
-}
-
-/** A recipe's name becomes a file's name, so it must be one. */
-function recipeName(text: string): string {
-  const complaint = nameProblem(text);
-  if (complaint) refuse("bad-name", complaint.message, { hint: complaint.hint });
-  return text;
 }
 
 function settingValue(
