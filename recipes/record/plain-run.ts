@@ -94,7 +94,7 @@ const data =
   `"settings_from":${text(1, 200)},${maybe(`"since_clean":${count(0)}`)}` +
   `"steps":\\[\\{"settings":\\{${list(setting)}\\}\\}\\]\\}`;
 const RUN_LINE = new RegExp(
-  `^\\{"v":1,"seq":\\d+,"at":${time},"entered":${time},"by":${text(0, 4000)},"kind":"run","data":${data},` +
+  `^\\{"v":1,"seq":${plain("\\d+")},"at":${time},"entered":${time},"by":${text(0, 4000)},"kind":"run","data":${data},` +
     '"prev":"[0-9a-f]{64}","hash":"[0-9a-f]{64}"\\}$',
 );
 

@@ -38,8 +38,8 @@ describe("a stack of films", () => {
     expect(Object.keys(answer.current_ma_cm2)).toEqual([
       "available",
       "reflected",
-      "absorbed_in_film",
       "absorbed_in_cover",
+      "absorbed_in_film",
       "into_substrate",
     ]);
     expect(Object.keys(answer.colour ?? {})).toEqual(["xyz", "lab", "hex", "illuminant", "observer"]);

@@ -85,6 +85,7 @@ describe("the quick yes for a line that holds an ordinary run", () => {
       ['"count":1', '"count":1.5'],
       ['"at":"2026-03-01T22', '"at":"2026-13-01T22'],
       ['"value":812', '"value":0812'],
+      ['"seq":7', '"seq":07'],
       ['"on":"cell"', '"on":"floor"'],
     ] as const) {
       expect(body, good).toContain(good);
