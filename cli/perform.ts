@@ -52,7 +52,7 @@ export async function perform(verb: Verb, args: Args, world: World, line: string
     stamp: (): Stamped => {
       const { book, line } = call.workspace();
       // Nothing can be written to it, so nothing is tried on half of it either.
-      
+      if (book.damage.length > 0) throw new Refusal(book.problems());
       const at = args.text("at");
       const ms = at === undefined ? undefined : whenOf(at, line.timeZone, world.ports.now());
       return {
