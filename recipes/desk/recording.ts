@@ -80,7 +80,7 @@ const hintFor = (what: string, value: number) =>
 function weightedGiven(given: Given | undefined): number | undefined {
   if (typeof given === "string" && given !== "-" && given !== "" && !/%\s*$/.test(given))
     refuse("missing-unit", `weighted reflectance ${given} has no unit`, {
-      hint: `write ${given}%, or as a fraction times 100`,
+      hint: "per cent, as 2.3%; a fraction of 0.023 is 2.3%",
     });
   const value = measured("weighted reflectance", given, "percent", "%");
   if (value !== undefined && value < 0.1)
