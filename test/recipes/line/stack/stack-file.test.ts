@@ -1,8 +1,8 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { filmStack } from "../../../engine/index.ts";
-import { readStack, stackDescription } from "../../../recipes/line/stack-file.ts";
-import { changed, problemsOf } from "./given.ts";
+import { filmStack } from "../../../../engine/index.ts";
+import { readStack, stackDescription } from "../../../../recipes/line/stack/stack-file.ts";
+import { changed, problemsOf } from "../given.ts";
 
 /** The example of the published contract. */
 const STACK = `light: { from: 300 nm, to: 1100 nm, step: 10 nm, angle: 0 deg, polarisation: both, weight: photons }   # s | p | both
