@@ -6,13 +6,17 @@ import { seenColour } from "./colour/lab.ts";
 import { colourWavelengthNm, type Triple } from "./colour/observer.ts";
 import { radians } from "./constants.ts";
 import { finite, refuse } from "./errors.ts";
+import { type LightShares, type LossLedger, lossLedger } from "./loss-ledger.ts";
+import { extrapolationSentence } from "./materials/extrapolate.ts";
 import { type Material, onGrid } from "./materials/material.ts";
+import type { NitrideMaterial } from "./materials/nitride-family.ts";
 import type { Polarisation } from "./optics/fresnel.ts";
 import { lowestMinimum, mainMinimum } from "./optics/reflectance-minimum.ts";
 import { stackLight } from "./optics/stack.ts";
 import { gridWeights, type SunlightWeight, weightedSum } from "./sunlight/weighting.ts";
-import { pyramidPaths } from "./surface/pyramids.ts";
-import { type SeenFrom, surroundings } from "./surface/seen-from.ts";
+import { coverLight, uncovered } from "./surface/cover.ts";
+import { type Arrangement, pyramidPaths } from "./surface/pyramids.ts";
+import { type SeenFrom, thickLayersOf } from "./surface/seen-from.ts";
 import { wavelengthGrid } from "./wavelength-grid.ts";
 
 export interface FilmLayer {
@@ -34,7 +38,7 @@ export interface FilmStackDescription {
   seenFrom: SeenFrom;
   /** From the light inwards; may be empty. */
   film: readonly FilmLayer[];
-  surface: { kind: "polished" } | { kind: "pyramids"; facetAngleDeg: number };
+  surface: { kind: "polished" } | { kind: "pyramids"; facetAngleDeg: number; arrangement?: Arrangement };
   substrate: Material;
 }
 
@@ -49,24 +53,12 @@ export interface FilmStackAnswer {
   weighted_reflectance_percent: number;
   /** Null when the curve has no valley inside the range. */
   reflectance_minimum_nm: number | null;
-  /** Photon currents; the parts add up to what is available. The cover is glass and encapsulant; without one it takes 0. */
-  current_ma_cm2: {
-    available: number;
-    reflected: number;
-    absorbed_in_cover: number;
-    absorbed_in_film: number[];
-    into_substrate: number;
-  };
+  /** Photon currents, see `loss-ledger.ts`. */
+  current_ma_cm2: LossLedger;
   /** Null when a material is not known over the whole visible range, 380 to 780 nm. */
   colour: { xyz: Triple; lab: Triple; hex: string; illuminant: "D65"; observer: "CIE 1931 2 degree" } | null;
-}
-
-interface StackSpectrum {
-  reflectance: Float64Array;
-  transmittance: Float64Array;
-  absorptance: Float64Array[];
-  /** Of the cover in front; zeros without one. */
-  cover: Float64Array;
+  /** A sentence for each material used beyond the wavelengths it is known at; empty when none is. */
+  extrapolated: string[];
 }
 
 /** Rounding may carry a fraction 1e-16 beyond what a fraction can be. */
@@ -100,15 +92,31 @@ export function filmStack(description: FilmStackDescription): FilmStackAnswer {
     absorptance: spectrum.absorptance.map(fractions),
     weighted_reflectance_percent: 100 * weightedSum(weights.average, spectrum.reflectance),
     reflectance_minimum_nm: film.length === 0 ? null : minimumOf(description, grid),
-    current_ma_cm2: {
-      available: weights.availableMaCm2,
-      reflected: weightedSum(weights.currentMaCm2, spectrum.reflectance),
-      absorbed_in_cover: weightedSum(weights.currentMaCm2, spectrum.cover),
-      absorbed_in_film: spectrum.absorptance.map((layer) => weightedSum(weights.currentMaCm2, layer)),
-      into_substrate: weightedSum(weights.currentMaCm2, spectrum.transmittance),
-    },
+    current_ma_cm2: lossLedger(spectrum, weights, light),
     colour: colourOf(description),
+    extrapolated: extrapolationsOf(description),
   };
+}
+
+/** All materials the light meets, in its order. */
+function materialsOf({ seenFrom, film, substrate }: FilmStackDescription): Material[] {
+  return [...(thickLayersOf(seenFrom) ?? []), ...film].map((layer) => layer.material).concat(substrate);
+}
+
+/** What was used beyond its range for light of this range, each said once. */
+function extrapolationsOf(description: FilmStackDescription): string[] {
+  const { light } = description;
+  const said = materialsOf(description).flatMap((material) => [
+    extrapolationSentence(material, light.fromNm, light.toNm),
+    beyondMembers(material),
+  ]);
+  return [...new Set(said.filter((sentence) => sentence !== null))];
+}
+
+/** A nitride whose index lies beyond those that were measured. */
+function beyondMembers(material: Material | NitrideMaterial): string | null {
+  if (!("extrapolated" in material && material.extrapolated)) return null;
+  return `${material.name} of index ${material.index} lies beyond the films measured; their trend is carried on`;
 }
 
 /** Of the coated surface itself, the cover taken off: glass and encapsulant make dips and steps of their own. */
@@ -123,14 +131,13 @@ function minimumOf(description: FilmStackDescription, grid: Float64Array): numbe
 function colourOf(description: FilmStackDescription): FilmStackAnswer["colour"] {
   const first = colourWavelengthNm[0];
   const last = colourWavelengthNm[colourWavelengthNm.length - 1];
-  const materials = [description.substrate, ...description.film.map((layer) => layer.material)];
-  if (materials.some(({ rangeNm }) => rangeNm[0] > first || rangeNm[1] < last)) return null;
+  if (materialsOf(description).some(({ rangeNm }) => rangeNm[0] > first || rangeNm[1] < last)) return null;
   const { xyz, lab, hex } = seenColour(spectrumOf(description, colourWavelengthNm).reflectance);
   return { xyz, lab, hex, illuminant: "D65", observer: "CIE 1931 2 degree" };
 }
 
 /** The stack on a wavelength grid; for unpolarised light aslant, the mean of s and p. */
-function spectrumOf(description: FilmStackDescription, grid: Float64Array, covered = true): StackSpectrum {
+function spectrumOf(description: FilmStackDescription, grid: Float64Array, covered = true): LightShares {
   const { polarisation, angleDeg } = description.light;
   if (polarisation !== "both") return polarised(description, grid, polarisation, covered);
   const s = polarised(description, grid, "s", covered);
@@ -141,7 +148,7 @@ function spectrumOf(description: FilmStackDescription, grid: Float64Array, cover
     reflectance: mean(s.reflectance, p.reflectance),
     transmittance: mean(s.transmittance, p.transmittance),
     absorptance: s.absorptance.map((layer, j) => mean(layer, p.absorptance[j])),
-    cover: mean(s.cover, p.cover),
+    cover: s.cover.map((layer, j) => mean(layer, p.cover[j])),
   };
 }
 
@@ -150,48 +157,57 @@ function polarised(
   grid: Float64Array,
   polarisation: Polarisation,
   covered: boolean,
-): StackSpectrum {
-  const { light, film, surface } = description;
-  const around = surroundings(description.seenFrom, grid, radians(light.angleDeg), polarisation);
+): LightShares {
+  const { light, film, surface, seenFrom } = description;
+  const angleRad = radians(light.angleDeg);
+  const paths =
+    surface.kind === "pyramids" ? pyramidPaths(surface.arrangement ?? "random", surface.facetAngleDeg) : null;
+  const exitsRad = paths ? paths.map((path) => path.exitRad ?? 0) : "mirror";
+  const whole = coverLight({ seenFrom, wavelengthNm: grid, exitsRad, angleRad, polarisation });
+  const cover = covered ? whole : uncovered(whole);
   const substrate = onGrid(description.substrate, grid);
   const indices = film.map((layer) => onGrid(layer.material, grid));
-  // At each bounce on pyramids the light counts as unpolarised; see surface/pyramids.ts.
-  const paths = surface.kind === "pyramids" ? pyramidPaths("random", surface.facetAngleDeg) : null;
-  const spectrum: StackSpectrum = {
-    reflectance: new Float64Array(grid.length),
-    transmittance: new Float64Array(grid.length),
-    absorptance: film.map(() => new Float64Array(grid.length)),
-    cover: new Float64Array(grid.length),
-  };
+  const arrays = (many: number) => Array.from({ length: many }, () => new Float64Array(grid.length));
+  const [reflectance, transmittance] = arrays(2);
+  const absorptance = arrays(film.length);
+  const inCover = arrays(cover.layers);
   for (let i = 0; i < grid.length; i++) {
     const layers = film.map((layer, j) => ({ n: indices[j].n[i], k: indices[j].k[i], thicknessNm: layer.thicknessNm }));
-    const one = (angleRad: number, kind: Polarisation | "both") =>
+    const one = (bounceRad: number, kind: Polarisation | "both") =>
       stackLight({
         wavelengthNm: grid[i],
-        angleRad,
-        incidenceIndex: around.incidenceIndex[i],
+        angleRad: bounceRad,
+        incidenceIndex: cover.innerIndex[i],
         layers,
         substrate: { n: substrate.n[i], k: substrate.k[i] },
         polarisation: kind,
       });
-    for (const path of paths ?? [{ anglesRad: [around.angleRad[i]], fraction: 1 }]) {
+    /** Of the light that reaches the surface once: what goes up each way, and what of it leaves and comes down again. */
+    const upwards: number[] = [];
+    let leaving = 0;
+    let returning = 0;
+    (paths ?? [{ anglesRad: [cover.innerAngleRad[i]], fraction: 1 }]).forEach((path, way) => {
       let left = path.fraction;
-      for (const angleRad of path.anglesRad) {
-        const bounce = one(angleRad, paths ? "both" : polarisation);
-        spectrum.transmittance[i] += left * bounce.transmittance;
-        for (let j = 0; j < film.length; j++) spectrum.absorptance[j][i] += left * bounce.absorptance[j];
+      for (const bounceRad of path.anglesRad) {
+        // At each bounce on pyramids the light counts as unpolarised; see surface/pyramids.ts.
+        const bounce = one(bounceRad, paths ? "both" : polarisation);
+        transmittance[i] += left * bounce.transmittance;
+        for (let j = 0; j < film.length; j++) absorptance[j][i] += left * bounce.absorptance[j];
         left *= bounce.reflectance;
       }
-      spectrum.reflectance[i] += left;
-    }
-    if (!around.cover || !covered) continue;
-    const below = spectrum.reflectance[i];
-    const { reflectance, reach } = around.cover.over(i, below);
-    // What neither comes back out of the cover nor stays below it.
-    spectrum.cover[i] = 1 - reflectance - reach * (1 - below);
-    spectrum.reflectance[i] = reflectance;
-    spectrum.transmittance[i] *= reach;
-    for (const layer of spectrum.absorptance) layer[i] *= reach;
+      upwards.push(left);
+      leaving += left * cover.leaves[way][i];
+      returning += left * cover.returns[way][i];
+    });
+    // All the light that reaches the surface, first and later passes added.
+    const reach = cover.enters[i] / (1 - returning);
+    reflectance[i] = cover.front[i] + reach * leaving;
+    transmittance[i] *= reach;
+    for (const layer of absorptance) layer[i] *= reach;
+    inCover.forEach((layer, j) => {
+      const onTheWayOut = upwards.reduce((sum, up, way) => sum + up * cover.absorbedLeaving[way][j][i], 0);
+      layer[i] = cover.absorbedGoingIn[j][i] + reach * onTheWayOut;
+    });
   }
-  return spectrum;
+  return { reflectance, transmittance, absorptance, cover: inCover };
 }

@@ -58,6 +58,7 @@ const UNITS: ReadonlyMap<string, UnitRow> = new Map([
   ["nm", row("length", 1)],
   // micro sign U+00B5 and Greek mu U+03BC look alike and are both typed
   ["um", row("length", 1000, ["\u00b5m", "\u03bcm"])],
+  ["mm", row("length", 1e6)],
   // letter A with ring U+00C5, the angstrom sign U+212B, and A with a combining ring
   ["angstrom", row("length", 0.1, ["\u00c5", "\u212b", "A\u030a"])],
   ["%", row("percent", 1)],

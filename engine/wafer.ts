@@ -3,21 +3,22 @@
  * observation model of the rest of the program, so it is built once a surface and range, and then asked many thousand times.
  *
  * Thickness is always on the surface named: on the facet for pyramids. Light comes straight down on the wafer, the silicon is
- * half-infinite (no light comes back from the rear, which adds to measured reflectance above about 1000 nm). Under glass the
- * angles on pyramids are those of light travelling straight down in the encapsulant, and what the pyramids send back leaves
- * through the front as if at normal incidence: total reflection of slanted light at the glass's outer face, which
- * returns some of it, is left out, so reflectance of pyramids under glass is an upper estimate.
+ * half-infinite (no light comes back from the rear, which adds to measured reflectance above about 1000 nm). Under thick layers
+ * the light pyramids send back passes them aslant, way by way, and is partly or totally reflected down again; light that comes
+ * down again is taken to meet the texture straight down, as the first did (`surface/cover.ts`).
  */
 import { type SeenColour, seenColour } from "./colour/lab.ts";
 import { colourWavelengthNm } from "./colour/observer.ts";
 import { materialByName } from "./materials/library.ts";
+import { onGrid } from "./materials/material.ts";
 import { type NitrideMaterial, siliconNitride } from "./materials/nitride-family.ts";
 import { mainMinimum, mainStretch } from "./optics/reflectance-minimum.ts";
+import { weightedMap } from "./optics/weighted-map.ts";
 import { type GridWeights, gridWeights, type SunlightWeight, weightedSum } from "./sunlight/weighting.ts";
 import { type BareSurface, bareSurface, FilmedSpot, FilmedSurface, withoutCover } from "./surface/filmed-surface.ts";
 import { pathSum } from "./surface/path-sum.ts";
 import { type Arrangement, pyramidPaths } from "./surface/pyramids.ts";
-import { type SeenFrom, surroundings } from "./surface/seen-from.ts";
+import { innermostIndex, type SeenFrom } from "./surface/seen-from.ts";
 import { type WaferTable, waferTable } from "./wafer-table.ts";
 import { wavelengthGrid } from "./wavelength-grid.ts";
 
@@ -66,6 +67,14 @@ export interface CoatedWafer {
    * the coated wafer in the encapsulant: the cover's front reflection and absorption make dips and steps of their own.
    */
   reflectanceMinimumNm(index: number, thicknessNm: number): number | null;
+  /**
+   * Weighted reflectance over a plane of films, percent, at [row * columns + column]: a row an index, thicknesses fromNm,
+   * fromNm + stepNm and so on. Far cheaper than asking film by film. Refuses as `weightedMap` and `siliconNitride` do.
+   */
+  weightedReflectanceMap(
+    indices: readonly number[],
+    thickness: { fromNm: number; stepNm: number; columns: number },
+  ): Float64Array;
   currents(index: number, thicknessNm: number): WaferCurrents;
   colour(index: number, thicknessNm: number): SeenColour;
   /** The fast smooth stand-in for the two numbers above that are asked most. */
@@ -105,10 +114,7 @@ export function coatedWafer(description: WaferDescription): CoatedWafer {
   for (const wavelengthNm of [fromNm, toNm]) siliconNitride(2).at(wavelengthNm);
   const bare = on(wavelengthGrid(fromNm, toNm, stepNm));
   const scanBare = withoutCover(stepNm <= scanStepNm ? bare : on(wavelengthGrid(fromNm, toNm, scanStepNm)));
-  const incidenceIndexAt = (wavelengthNm: number): number =>
-    seenFrom === "glass" ? surroundings(seenFrom, Float64Array.of(wavelengthNm)).incidenceIndex[0] : outside;
-  const outside = seenFrom === "glass" ? Number.NaN : bare.around.incidenceIndex[0];
-  const spot = new FilmedSpot(paths, silicon, incidenceIndexAt);
+  const spot = new FilmedSpot(paths, silicon, innermostIndex(seenFrom));
   let colourBare: BareSurface | null = null;
   const weights: GridWeights = gridWeights(bare.wavelengthNm, fromNm, toNm, weight);
   const films = new Map<number, ReadyFilm>();
@@ -160,13 +166,19 @@ export function coatedWafer(description: WaferDescription): CoatedWafer {
         [first, last],
       );
     },
+    weightedReflectanceMap(indices, thickness) {
+      const { wavelengthNm, paths: ways, cover, silicon: substrate } = bare;
+      const shape = { wavelengthNm, weight: weights.average, paths: ways, cover, substrate };
+      const films = indices.map((index) => onGrid(siliconNitride(index), wavelengthNm));
+      return weightedMap({ ...shape, films, ...thickness }).map((fraction) => 100 * fraction);
+    },
     currents(index, thicknessNm) {
       const { reflectance, transmittance, absorptance } = evaluated(index, thicknessNm);
       const available = weights.availableMaCm2;
       const reflected = weightedSum(weights.currentMaCm2, reflectance);
       const absorbedInFilm = weightedSum(weights.currentMaCm2, absorptance);
       const intoSilicon = weightedSum(weights.currentMaCm2, transmittance);
-      const absorbedInCover = bare.around.cover ? available - reflected - absorbedInFilm - intoSilicon : 0;
+      const absorbedInCover = bare.cover.layers > 0 ? available - reflected - absorbedInFilm - intoSilicon : 0;
       return { available, reflected, absorbedInFilm, intoSilicon, absorbedInCover };
     },
     colour(index, thicknessNm) {

@@ -32,7 +32,7 @@ export { holdsLine, LINE_FILE, Workspace } from "./desk/workspace.ts";
 export type { Stamp, Written } from "./desk/writing.ts";
 export * from "./line/line.ts";
 export { asQuantities, asQuantity, type GivenSettings, parseSet, shown, snapInside } from "./line/settings.ts";
-export { readStack, stackDescription } from "./line/stack/stack-file.ts";
+export { readStack, stackDescription, stackUnknowns } from "./line/stack/stack-file.ts";
 export { formatWhen, parseWhen } from "./line/zoned-time.ts";
 export type * from "./outlook.ts";
 /** Loaded when asked for: CSV reading, and the demo's virtual chambers, are no part of what a proposal waits for. */

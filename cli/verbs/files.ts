@@ -1,16 +1,6 @@
-/** The verbs about files: new, check, import, film, report. */
-import { filmStack, Refusal, refuse } from "../../engine/index.ts";
-import {
-  changeAt,
-  checkLine,
-  creating,
-  importing,
-  parseChangeId,
-  readStack,
-  reportMarkdown,
-  stackDescription,
-} from "../../recipes/index.ts";
-import { filmText } from "../text/film.ts";
+/** The verbs about files: new, check, import, report. */
+import { Refusal, refuse } from "../../engine/index.ts";
+import { changeAt, checkLine, creating, importing, parseChangeId, reportMarkdown } from "../../recipes/index.ts";
 import { flag, type Outcome, toggle, type Verb, word } from "./verb.ts";
 
 export const fileVerbs: Verb[] = [
@@ -86,23 +76,6 @@ export const fileVerbs: Verb[] = [
         call.stamp(),
       );
       return { document: done.document, text: done.text, notices: done.notices };
-    },
-  },
-  {
-    name: "film",
-    does: "optics of any stack: reflectance, transmittance, absorptance of each layer, currents, colour",
-    words: [word("stack", "the stack file")],
-    flags: [],
-    examples: ["coatwright film stack.yaml", "coatwright film stack.yaml --json"],
-    writes: false,
-    run: (call) => {
-      const file = call.args.need("stack");
-      const folder = file.includes("/") ? file.slice(0, file.lastIndexOf("/") + 1) : "";
-      const stack = readStack(call.readFile(file), file, (name) =>
-        call.readFile(name.startsWith("/") ? name : folder + name),
-      );
-      const answer = filmStack(stackDescription(stack));
-      return { document: { ...answer }, text: filmText(answer, stack) };
     },
   },
   {

@@ -3,10 +3,11 @@ import { nearestWord, refuse } from "../../engine/index.ts";
 import { askVerbs } from "./ask.ts";
 import { changeVerbs } from "./change.ts";
 import { fileVerbs } from "./files.ts";
+import { filmVerbs } from "./film.ts";
 import { recordVerbs } from "./record.ts";
 import type { Verb } from "./verb.ts";
 
-const all = [...fileVerbs, ...recordVerbs, ...askVerbs, ...changeVerbs];
+const all = [...fileVerbs, ...filmVerbs, ...recordVerbs, ...askVerbs, ...changeVerbs];
 const inOrder = [
   "new",
   "check",

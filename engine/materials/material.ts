@@ -2,12 +2,21 @@
  * What every material is to the rest of the engine: a name, where its numbers come from, the wavelengths it is known at,
  * and its complex index there. Convention everywhere: N = n - ik with time factor exp(+iwt), so k >= 0 absorbs.
  */
-import { refuse } from "../errors.ts";
+import { finite, refuse } from "../errors.ts";
 
 /** Complex index at one wavelength, dimensionless; k >= 0 absorbs. */
 export interface OpticalConstants {
   n: number;
   k: number;
+}
+
+/** A material asked for beyond what is known of it: which, how far it is known, and what was done beyond. */
+export interface Extrapolation {
+  readonly name: string;
+  /** First and last wavelength, nm, at which it is known. */
+  readonly knownNm: readonly [number, number];
+  /** The last n and k kept as they are, or the formula used beyond the range it was fitted on. */
+  readonly how: "held" | "formula";
 }
 
 export interface Material {
@@ -16,12 +25,16 @@ export interface Material {
   readonly source: string;
   /** First and last wavelength, nm, at which `at` answers. */
   readonly rangeNm: readonly [number, number];
+  /** What lies beyond the known range where `at` answers all the same; absent when nothing does. */
+  readonly extrapolations?: readonly Extrapolation[];
   /** Complex index at a vacuum wavelength in nm. Refuses (code "outside-table") outside `rangeNm`. */
   at(wavelengthNm: number): OpticalConstants;
   /** The same n alone, where that is cheaper. */
   indexAt?(wavelengthNm: number): number;
   /** The same as `at` along a whole grid, where that is cheaper. */
   along?(wavelengthNm: ArrayLike<number>): OpticalConstantsOnGrid;
+  /** Of a formula: its value at any wavelength, range or not. Refuses ("material-value") where it is not physical. */
+  continuedAt?(wavelengthNm: number): OpticalConstants;
 }
 
 /** Complex index on a whole wavelength grid: two arrays as long as the grid. */
@@ -49,4 +62,11 @@ export function requireInRange(name: string, rangeNm: readonly [number, number],
   refuse("outside-table", `${name} is known from ${rangeNm[0]} to ${rangeNm[1]} nm, ${wavelengthNm} nm was asked`, {
     hint: "narrow the wavelength range, or give a table that covers it",
   });
+}
+
+/** Refuses a wavelength range that is not finite ("not-a-number"), or not positive and increasing ("material-range"). */
+export function requireRange(name: string, rangeNm: readonly [number, number]): void {
+  for (const end of rangeNm) finite(end, `${name} range`);
+  if (rangeNm[0] > 0 && rangeNm[0] < rangeNm[1]) return;
+  refuse("material-range", `${name}: a range from ${rangeNm[0]} to ${rangeNm[1]} nm does not increase from above zero`);
 }

@@ -18,9 +18,15 @@ const smallestSquare = 1e-12;
  * Writes Re q, Im q of a medium with index n - ik at `out[at]`, `out[at + 1]`. `along` is (n0 sin theta0)^2, dimensionless.
  */
 export function writeNormalIndex(n: number, k: number, along: number, out: Float64Array, at: number): void {
+  if (along === 0 && n > 0) {
+    // Straight down q is the index itself.
+    out[at] = n;
+    out[at + 1] = k === 0 ? 0 : -k;
+    return;
+  }
   const re = n * n - k * k - along;
   const im = -2 * n * k;
-  const size = Math.hypot(re, im);
+  const size = Math.sqrt(re * re + im * im);
   if (size < smallestSquare) {
     out[at] = Math.sqrt(smallestSquare);
     out[at + 1] = 0;

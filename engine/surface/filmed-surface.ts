@@ -4,20 +4,21 @@
  */
 import { type Material, type OpticalConstantsOnGrid, onGrid } from "../materials/material.ts";
 import { OneFilm } from "../optics/one-film.ts";
-import { addPaths, addReflections, type PathSum } from "./path-sum.ts";
-import { type SeenFrom, type Surroundings, surroundings } from "./seen-from.ts";
+import { type CoverLight, coverLight, uncovered } from "./cover.ts";
+import { addLeaving, addPaths, addReflections, type PathSum } from "./path-sum.ts";
+import type { SeenFrom } from "./seen-from.ts";
 
 /** Everything about a wafer that does not depend on its film, on one wavelength grid; light comes straight down. */
 export interface BareSurface {
   wavelengthNm: Float64Array;
   paths: PathSum;
-  around: Surroundings;
+  cover: CoverLight;
   silicon: OpticalConstantsOnGrid;
 }
 
 /** The same surface with the cover taken off, in the medium that touches the film. */
 export function withoutCover(bare: BareSurface): BareSurface {
-  return bare.around.cover ? { ...bare, around: { ...bare.around, cover: null } } : bare;
+  return bare.cover.layers > 0 ? { ...bare, cover: uncovered(bare.cover) } : bare;
 }
 
 export function bareSurface(
@@ -26,7 +27,9 @@ export function bareSurface(
   seenFrom: SeenFrom,
   silicon: Material,
 ): BareSurface {
-  return { wavelengthNm, paths, around: surroundings(seenFrom, wavelengthNm), silicon: onGrid(silicon, wavelengthNm) };
+  const exitsRad = paths.paths.map((path) => path.exitRad);
+  const cover = coverLight({ seenFrom, wavelengthNm, exitsRad });
+  return { wavelengthNm, paths, cover, silicon: onGrid(silicon, wavelengthNm) };
 }
 
 /** A film of one material on a bare surface, ready for any thickness. */
@@ -42,6 +45,9 @@ export class FilmedSurface {
   private readonly film: OneFilm;
   private readonly bounceReflectance: Float64Array;
   private readonly bounceTransmittance: Float64Array;
+  /** Working space under a cover: of the light at the surface, what leaves and what comes down again. */
+  private readonly leaving: Float64Array;
+  private readonly returning: Float64Array;
   private readonly bare: BareSurface;
 
   constructor(bare: BareSurface, film: Material) {
@@ -51,7 +57,7 @@ export class FilmedSurface {
     this.filmIndex = constants.n;
     this.film = new OneFilm({
       wavelengthNm: bare.wavelengthNm,
-      incidenceIndex: bare.around.incidenceIndex,
+      incidenceIndex: bare.cover.innerIndex,
       film: constants,
       substrate: bare.silicon,
       anglesRad: bare.paths.anglesRad,
@@ -61,39 +67,44 @@ export class FilmedSurface {
     this.absorptance = new Float64Array(count);
     this.bounceReflectance = new Float64Array(count * bare.paths.anglesRad.length);
     this.bounceTransmittance = new Float64Array(count * bare.paths.anglesRad.length);
+    this.leaving = new Float64Array(bare.cover.layers > 0 ? count : 0);
+    this.returning = new Float64Array(bare.cover.layers > 0 ? count : 0);
   }
 
   /**
    * Fills `reflectance` alone, at the wavelengths from place `first` to before `end`: all when left out. Refuses as `evaluate`.
    */
   reflect(thicknessNm: number, first = 0, end = this.reflectance.length): void {
-    const { paths, wavelengthNm, around } = this.bare;
-    this.film.evaluate(thicknessNm, this.bounceReflectance, null, first, end);
-    addReflections(paths, wavelengthNm.length, this.bounceReflectance, this.reflectance, first, end);
-    if (!around.cover) return;
-    for (let i = first; i < end; i++) this.reflectance[i] = around.cover.over(i, this.reflectance[i]).reflectance;
+    const { paths, wavelengthNm, cover } = this.bare;
+    const { bounceReflectance, reflectance, leaving, returning } = this;
+    this.film.evaluate(thicknessNm, bounceReflectance, null, first, end);
+    if (cover.layers === 0) {
+      addReflections(paths, wavelengthNm.length, bounceReflectance, reflectance, first, end);
+      return;
+    }
+    addLeaving(paths, cover, wavelengthNm.length, bounceReflectance, leaving, returning, first, end);
+    for (let i = first; i < end; i++) {
+      reflectance[i] = cover.front[i] + (cover.enters[i] * leaving[i]) / (1 - returning[i]);
+    }
   }
 
   /** Fills the three results for a thickness on the surface (on the facet, for pyramids), nm. Refuses as `OneFilm` does. */
   evaluate(thicknessNm: number): void {
-    const { paths, wavelengthNm, around } = this.bare;
-    this.film.evaluate(thicknessNm, this.bounceReflectance, this.bounceTransmittance);
-    addPaths(
-      paths,
-      wavelengthNm.length,
-      this.bounceReflectance,
-      this.bounceTransmittance,
-      this.reflectance,
-      this.transmittance,
-    );
-    for (let i = 0; i < wavelengthNm.length; i++) {
-      // Rounding can leave a film without extinction at minus 1e-16.
-      this.absorptance[i] = Math.max(0, 1 - this.reflectance[i] - this.transmittance[i]);
-      if (!around.cover) continue;
-      const covered = around.cover.over(i, this.reflectance[i]);
-      this.reflectance[i] = covered.reflectance;
-      this.transmittance[i] *= covered.reach;
-      this.absorptance[i] *= covered.reach;
+    const { paths, wavelengthNm, cover } = this.bare;
+    const { bounceReflectance, reflectance, transmittance, absorptance, leaving, returning } = this;
+    const count = wavelengthNm.length;
+    this.film.evaluate(thicknessNm, bounceReflectance, this.bounceTransmittance);
+    addPaths(paths, count, bounceReflectance, this.bounceTransmittance, reflectance, transmittance);
+    // Rounding can leave a film without extinction at minus 1e-16.
+    for (let i = 0; i < count; i++) absorptance[i] = Math.max(0, 1 - reflectance[i] - transmittance[i]);
+    if (cover.layers === 0) return;
+    addLeaving(paths, cover, count, bounceReflectance, leaving, returning);
+    for (let i = 0; i < count; i++) {
+      // All the light that reaches the surface, first and later passes added.
+      const reach = cover.enters[i] / (1 - returning[i]);
+      reflectance[i] = cover.front[i] + reach * leaving[i];
+      transmittance[i] *= reach;
+      absorptance[i] *= reach;
     }
   }
 }

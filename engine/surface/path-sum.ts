@@ -3,11 +3,17 @@
  * is the case of a single path with a single bounce.
  */
 import type { BouncePath } from "./bounce-paths.ts";
+import type { CoverLight } from "./cover.ts";
 
 /** Angles (radians) worth evaluating once, and the paths rewritten as positions in that list. */
 export interface PathSum {
   anglesRad: readonly number[];
-  paths: readonly { fraction: number; bounces: readonly number[] }[];
+  paths: readonly {
+    fraction: number;
+    bounces: readonly number[];
+    /** Polar angle in which the light leaves, radians; see `BouncePath`. */
+    exitRad: number;
+  }[];
 }
 
 /** Collects the distinct angles of a set of paths; angles closer than 1e-9 rad are one. */
@@ -18,7 +24,11 @@ export function pathSum(paths: readonly BouncePath[]): PathSum {
     return known >= 0 ? known : anglesRad.push(angle) - 1;
   };
   return {
-    paths: paths.map(({ fraction, anglesRad: angles }) => ({ fraction, bounces: angles.map(position) })),
+    paths: paths.map(({ fraction, anglesRad: angles, exitRad = 0 }) => ({
+      fraction,
+      bounces: angles.map(position),
+      exitRad,
+    })),
     anglesRad,
   };
 }
@@ -68,4 +78,33 @@ export function addReflections(
       outReflectance[i] += left;
     }
   }
+}
+
+/**
+ * What the cover makes of the ways, at the wavelengths from place `first` to before `end`: of the light that arrives at the
+ * surface once, `outLeaves` gets out to the viewer without coming down again and `outReturns` comes down again (the sums S_L and
+ * S_B of `cover.ts`). `reflectance` as for `addPaths`; the cover's ways are those of the sum, in its order.
+ */
+export function addLeaving(
+  sum: PathSum,
+  cover: Pick<CoverLight, "leaves" | "returns">,
+  wavelengths: number,
+  reflectance: Float64Array,
+  outLeaves: Float64Array,
+  outReturns: Float64Array,
+  first = 0,
+  end = wavelengths,
+): void {
+  outLeaves.fill(0, first, end);
+  outReturns.fill(0, first, end);
+  sum.paths.forEach(({ fraction, bounces }, way) => {
+    const leaves = cover.leaves[way];
+    const returns = cover.returns[way];
+    for (let i = first; i < end; i++) {
+      let left = fraction;
+      for (let b = 0; b < bounces.length; b++) left *= reflectance[bounces[b] * wavelengths + i];
+      outLeaves[i] += left * leaves[i];
+      outReturns[i] += left * returns[i];
+    }
+  });
 }

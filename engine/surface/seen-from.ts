@@ -1,51 +1,39 @@
 /**
- * What lies between the eye and the coated wafer: air, another medium, or the front of a module (soda-lime glass 3.2 mm, encapsulant
- * 0.45 mm, both thick and incoherent).
+ * What lies between the eye and the coated wafer: air, another medium, the front of a module, or any list of thick incoherent
+ * layers. `cover.ts` works out what it does to light.
  */
 import { finite, refuse } from "../errors.ts";
 import { materialByName } from "../materials/library.ts";
-import type { Polarisation } from "../optics/fresnel.ts";
-import { ThickLayers } from "../optics/thick-layers.ts";
+import type { ThickLayer } from "../optics/thick-layers.ts";
 
-export type SeenFrom = "air" | "glass" | { index: number };
+/** `thick`: outermost first, with air outside. "glass": soda-lime glass 3.2 mm, then encapsulant 0.45 mm. */
+export type SeenFrom = "air" | "glass" | { index: number } | { thick: readonly ThickLayer[] };
 
 /** Thicknesses of a module's front, mm (common practice, no source). */
 const glassMm = 3.2;
 const encapsulantMm = 0.45;
 
-/** The medium on the film, on a wavelength grid, and the thick cover above it if there is one. */
-export interface Surroundings {
-  /** Real index of the medium on the film, one number a wavelength. */
-  incidenceIndex: Float64Array;
-  /** Angle in that medium, radians, one number a wavelength. */
-  angleRad: Float64Array;
-  cover: ThickLayers | null;
-}
-
-/**
- * Surroundings on a grid (nm) for light at an angle (radians) in the outermost medium.
- * Refuses an index that is not positive ("stack-value") and wavelengths glass or encapsulant are not known at
- * ("outside-table": 300 to 1690 nm).
- */
-export function surroundings(
-  seenFrom: SeenFrom,
-  wavelengthNm: Float64Array,
-  angleRad = 0,
-  polarisation: Polarisation = "s",
-): Surroundings {
+/** The thick layers in front, outermost first; null for air or a medium of one index. */
+export function thickLayersOf(seenFrom: SeenFrom): readonly ThickLayer[] | null {
   if (seenFrom === "glass") {
-    const layers = [
+    return [
       { material: materialByName("glass"), thicknessMm: glassMm },
       { material: materialByName("encapsulant"), thicknessMm: encapsulantMm },
     ];
-    const cover = new ThickLayers(wavelengthNm, layers, 1, angleRad, polarisation);
-    return { incidenceIndex: cover.innerIndex, angleRad: cover.innerAngleRad, cover };
   }
-  const index = seenFrom === "air" ? 1 : finite(seenFrom.index, "incidence index");
+  return typeof seenFrom === "object" && "thick" in seenFrom ? seenFrom.thick : null;
+}
+
+/**
+ * Real index of the medium that touches the film, at any wavelength (nm). Refuses an index that is not positive
+ * ("stack-value"); the answer refuses wavelengths that medium is not known at ("outside-table").
+ */
+export function innermostIndex(seenFrom: SeenFrom): (wavelengthNm: number) => number {
+  const innermost = thickLayersOf(seenFrom)?.at(-1)?.material;
+  if (innermost) {
+    return (wavelengthNm) => innermost.indexAt?.(wavelengthNm) ?? innermost.at(wavelengthNm).n;
+  }
+  const index = typeof seenFrom === "object" && "index" in seenFrom ? finite(seenFrom.index, "incidence index") : 1;
   if (index <= 0) refuse("stack-value", `incidence index ${index} is not positive`);
-  return {
-    incidenceIndex: new Float64Array(wavelengthNm.length).fill(index),
-    angleRad: new Float64Array(wavelengthNm.length).fill(angleRad),
-    cover: null,
-  };
+  return () => index;
 }

@@ -1,6 +1,6 @@
 /** Looking: the line at a glance, one chamber in full, and the live what-if. Plain data for verbs and screens; writes nothing. */
 import { coverageOf, type Settings, suspicions, trackRecord, untold } from "../../calibration/index.ts";
-import { Refusal } from "../../engine/index.ts";
+import { nitrideIndexRange, Refusal } from "../../engine/index.ts";
 import type { Alarm } from "../advice/alarms.ts";
 import { decide } from "../advice/decide.ts";
 import { chancesAlone, type Expectation, expectation } from "../advice/expectation.ts";
@@ -312,19 +312,27 @@ function plane(ws: Workspace, goal: ChamberView["goal"], now: Outlook): ChamberV
     4 * (goal.thicknessNm?.within ?? 2),
     1.3 * Math.abs((now.film?.thicknessNm ?? centreD) - centreD),
   );
-  const steps = 20;
-  const at = (centre: number, half: number) =>
-    Array.from({ length: steps + 1 }, (_, i) => centre - half + (2 * half * i) / steps);
-  const index = at(centreN, halfN);
-  const thicknessNm = at(centreD, halfD);
+  const even = (low: number, high: number) =>
+    Array.from({ length: planeSteps + 1 }, (_, i) => low + ((high - low) * i) / planeSteps);
+  // Never beyond the films the optics know, whatever the goal says.
+  const lowN = Math.min(Math.max(centreN - halfN, nitrideIndexRange[0]), nitrideIndexRange[1] - 0.02);
+  const index = even(lowN, Math.max(Math.min(centreN + halfN, nitrideIndexRange[1]), lowN + 0.02));
+  const thicknessNm = even(Math.max(centreD - halfD, 1), centreD + halfD);
+  const columns = thicknessNm.length;
+  const map = light.wafer.weightedReflectanceMap(index, {
+    fromNm: thicknessNm[0] * light.facet.mean,
+    stepNm: (thicknessNm[1] - thicknessNm[0]) * light.facet.mean,
+    columns,
+  });
   return {
     index,
     thicknessNm,
-    weightedReflectancePercent: thicknessNm.map((d) =>
-      index.map((n) => light.weighted(n, d * light.facet.mean) ?? Number.NaN),
-    ),
+    weightedReflectancePercent: thicknessNm.map((_, column) => index.map((__, row) => map[row * columns + column])),
   };
 }
+
+/** Steps of the film plane each way: finer than a wide terminal shows. */
+const planeSteps = 40;
 
 /** A proposal as the screens show it. */
 export function proposalView(ws: Workspace, proposed: Proposed): ProposalView {

@@ -4,10 +4,11 @@
  */
 import { createHash } from "node:crypto";
 import { type Problem, Refusal } from "../../engine/index.ts";
+import { readWeight } from "./efficiency.ts";
 import { gaugeShape, goalShape, lightShape, oneRow, peopleShape, timeZone, waferShape } from "./goal-shape.ts";
 import { type CoatedLight, impliedBy } from "./implications.ts";
 import type { Gauge, Goal, Light, Line, Wafer } from "./line.ts";
-import { type FileReader, openBeside, readNumberTable } from "./number-table.ts";
+import type { FileReader } from "./number-table.ts";
 import { readChambers, readSettings } from "./read-settings.ts";
 import { readAnchor, readWindow } from "./read-window.ts";
 import { Reader } from "./shape.ts";
@@ -155,32 +156,8 @@ function readLight(reader: Reader, readFile: FileReader | undefined): Light | un
     reader.add(["light"], "range-reversed", message);
     return undefined;
   }
-  if (weight === "photons" || weight === "power") return { fromNm, toNm, weight };
-  if (!/\.csv$/i.test(weight)) {
-    const hint = "photons, power, or a file as in quantum-efficiency.csv";
-    reader.add(["light", "weight"], "wrong-value", `weight: "${weight}" is not a weighting known here`, hint);
-    return undefined;
-  }
-  // problems inside the table name the table's own rows; only a file that cannot be opened is a problem of this row
-  const source = reader.attempt(["light", "weight"], () => openBeside(weight, readFile));
-  if (source === undefined) return undefined;
-  try {
-    const { wavelength_nm, efficiency } = readNumberTable(source, weight, {
-      wavelength_nm: [1, 1e6],
-      efficiency: [0, 1],
-    });
-    const [first, last] = [wavelength_nm[0], wavelength_nm[wavelength_nm.length - 1]];
-    if (first > fromNm || last < toNm) {
-      const message = `${weight} covers ${first} to ${last} nm, the light goes from ${fromNm} to ${toNm} nm`;
-      reader.add(["light", "weight"], "table-too-short", message, "shorten the light, or lengthen the table");
-      return undefined;
-    }
-    return { fromNm, toNm, weight: { file: weight, wavelengthNm: wavelength_nm, efficiency } };
-  } catch (error) {
-    if (!(error instanceof Refusal)) throw error;
-    reader.problems.push(...error.problems);
-    return undefined;
-  }
+  const counted = readWeight(reader, weight, { fromNm, toNm }, readFile);
+  return counted && { fromNm, toNm, weight: counted };
 }
 
 function readGauges(reader: Reader): Map<string, Gauge> {

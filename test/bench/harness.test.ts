@@ -28,12 +28,12 @@ function staged(aMs: (round: number) => number, bMs: (round: number) => number) 
 }
 
 describe("the bench harness", () => {
-  it("compares the answers before it times anything, and times nothing when they differ", () => {
+  it("compares the answers before it times anything, and times nothing when they differ", async () => {
     const { bench, diary, clock } = staged(
       () => 1,
       () => 1,
     );
-    time(bench, clock);
+    await time(bench, clock);
     expect(diary[0]).toBe("check");
     const wrong = staged(
       () => 1,
@@ -42,32 +42,63 @@ describe("the bench harness", () => {
     wrong.bench.check = () => {
       throw new Error("they differ");
     };
-    expect(() => time(wrong.bench, wrong.clock)).toThrow("they differ");
+    await expect(time(wrong.bench, wrong.clock)).rejects.toThrow("they differ");
     expect(wrong.diary).toEqual([]);
   });
 
-  it("lets the two take turns at going first, after two untimed rounds", () => {
+  it("lets the two take turns at going first, after two untimed rounds", async () => {
     const { bench, diary, clock } = staged(
       () => 1,
       () => 1,
     );
-    time(bench, clock);
+    await time(bench, clock);
     expect(diary.slice(1).join("")).toBe("abab" + "abbaabbaab");
   });
 
-  it("reports the median of the timed rounds, which one stall does not move, and uses every result", () => {
+  it("reports the median of the timed rounds, which one stall does not move, and uses every result", async () => {
     const before = usedResults();
     // Rounds 0 and 1 are the untimed ones.
     const { bench, clock } = staged(
       (round) => [900, 900, 2, 2, 500, 2, 2][round],
       () => 4,
     );
-    const timing = time(bench, clock);
+    const timing = await time(bench, clock);
     expect(timing.aMedianMs).toBe(2);
     expect(timing.bMedianMs).toBe(4);
     expect(timing.ratio).toBe(0.5);
     expect(usedResults() - before).toBe(14);
     expect(inWords(timing)).toContain("ratio 0.500");
+  });
+
+  it("divides by how often a run does the work, and takes a way's own clock before its own", async () => {
+    const { bench, clock } = staged(
+      () => 6,
+      () => 6,
+    );
+    bench.a.repeats = 3;
+    const run = bench.b.run.bind(bench.b);
+    bench.b.run = async () => ({ result: Number(run()), ms: 10 });
+    const timing = await time(bench, clock);
+    expect(timing.aMedianMs).toBe(2);
+    expect(timing.bMedianMs).toBe(10);
+  });
+
+  it("lets go of both ways in the end, also when it failed", async () => {
+    const { bench, clock } = staged(
+      () => 1,
+      () => 1,
+    );
+    let closed = 0;
+    bench.a.close = bench.b.close = () => {
+      closed++;
+    };
+    await time(bench, clock);
+    expect(closed).toBe(2);
+    bench.check = async () => {
+      throw new Error("they differ");
+    };
+    await expect(time(bench, clock)).rejects.toThrow("they differ");
+    expect(closed).toBe(4);
   });
 
   it("interpolates between sorted values", () => {

@@ -44,7 +44,7 @@ try {
   for (const file of files) {
     const { benches } = await load(`${basename(file, ".ts")}.mjs`);
     for (const bench of benches) {
-      console.log(bench.skip ? `${bench.title}\n  skipped: ${bench.skip}` : inWords(time(bench)));
+      console.log(bench.skip ? `${bench.title}\n  skipped: ${bench.skip}` : inWords(await time(bench)));
     }
   }
   console.log(`(results used: ${usedResults().toPrecision(6)})`);

@@ -1,6 +1,7 @@
 import { describe, expect, test } from "vitest";
 import {
   constantMaterial,
+  extrapolated,
   type FilmStackDescription,
   filmStack,
   materialByName,
@@ -34,11 +35,13 @@ describe("a stack of films", () => {
       "reflectance_minimum_nm",
       "current_ma_cm2",
       "colour",
+      "extrapolated",
     ]);
     expect(Object.keys(answer.current_ma_cm2)).toEqual([
       "available",
       "reflected",
       "absorbed_in_cover",
+      "absorbed_in_cover_layers",
       "absorbed_in_film",
       "into_substrate",
     ]);
@@ -65,6 +68,75 @@ describe("a stack of films", () => {
       const parts = current.absorbed_in_film.reduce((a, b) => a + b, current.reflected + current.into_substrate);
       expectClose(parts, current.available, { absolute: 1e-9, because: "rounding" });
     }
+  });
+
+  test("under any list of thick layers accounts for all the current, layer by layer", () => {
+    const thick = [
+      { material: materialByName("glass"), thicknessMm: 4 },
+      { material: constantMaterial(1.48, 3e-7), thicknessMm: 0.6 },
+      { material: constantMaterial(1.52, 0), thicknessMm: 1 },
+    ];
+    const seenFrom = { thick };
+    const cases = [
+      under({}, { seenFrom }),
+      under({ angleDeg: 55 }, { seenFrom }),
+      under({ angleDeg: 55, polarisation: "p" }, { seenFrom }),
+      under({}, { seenFrom, surface: { kind: "pyramids", facetAngleDeg: 55 } }),
+      under({}, { seenFrom, surface: { kind: "pyramids", facetAngleDeg: 55, arrangement: "regular" } }),
+    ];
+    for (const { current_ma_cm2: c } of cases) {
+      expect(c.absorbed_in_cover_layers).toHaveLength(3);
+      expect(c.absorbed_in_cover_layers[0]).toBeGreaterThan(0.05);
+      expect(c.absorbed_in_cover_layers[1]).toBeGreaterThan(0.05);
+      expect(c.absorbed_in_cover_layers[2]).toBe(0);
+      const parts = [...c.absorbed_in_cover_layers, ...c.absorbed_in_film, c.reflected, c.into_substrate];
+      expectClose(
+        parts.reduce((a, b) => a + b, 0),
+        c.available,
+        { relative: 1e-12, because: "each part comes from its own sum: conservation, rounding" },
+      );
+      expectClose(c.absorbed_in_cover, c.available - parts.slice(3).reduce((a, b) => a + b, 0), {
+        absolute: 1e-10,
+        because: "rounding",
+      });
+    }
+  });
+
+  test("says what a quantum efficiency collects of the light in the substrate, and only where one is given", () => {
+    const flat = { wavelengthNm: [300, 1100], efficiency: [0.8, 0.8] };
+    const step = { wavelengthNm: [250, 700, 700.001, 1200], efficiency: [0, 0, 1, 1] };
+    const { current_ma_cm2: photons } = under({});
+    const { current_ma_cm2: some } = under({ weight: flat });
+    expect(photons).not.toHaveProperty("collected");
+    expect(under({ weight: "power" }).current_ma_cm2).toEqual(photons);
+    expect({ ...some, collected: undefined }).toEqual({ ...photons, collected: undefined });
+    expectClose(some.collected ?? 0, 0.8 * photons.into_substrate, { relative: 1e-12, because: "rounding" });
+    // All photons beyond 700 nm and none before: what enters in that range alone.
+    const { current_ma_cm2: half } = under({ weight: step });
+    const { current_ma_cm2: red } = under({ fromNm: 700 });
+    expectClose(half.collected ?? 0, red.into_substrate, {
+      relative: 2e-3,
+      because: "half an interval of sunlight at the step, 0.5 nm of 0.07 mA/cm2/nm beside 22.5 mA/cm2",
+    });
+  });
+
+  test("names what was used beyond its known wavelengths, once each", () => {
+    const rows: [number, number, number][] = [
+      [350, 2, 0],
+      [1000, 2, 0],
+    ];
+    const known = tabulated({ name: "my film", source: "test", rows });
+    const film = [1, 2].map(() => ({ material: extrapolated(known), thicknessNm: 40 }));
+    expect(under({}).extrapolated).toEqual([]);
+    expect(under({}, { film }).extrapolated).toEqual([expect.stringContaining("my film is known from 350 to 1000 nm")]);
+    expect(under({ fromNm: 400, toNm: 900 }, { film }).extrapolated).toEqual([]);
+    const front = { thick: [{ material: extrapolated(materialByName("glass")), thicknessMm: 3 }] };
+    expect(under({ fromNm: 290 }, { seenFrom: front }).extrapolated).toHaveLength(1);
+  });
+
+  test("with a nitride beyond the measured ones says so", () => {
+    const film = [{ material: siliconNitride(2.28), thicknessNm: 60 }];
+    expect(under({}, { film }).extrapolated).toEqual([expect.stringContaining("2.28")]);
   });
 
   test("is the mean of s and p for unpolarised light aslant, in air and under glass", () => {
@@ -106,6 +178,8 @@ describe("a stack of films", () => {
     const infrared = tabulated({ name: "infrared film", source: "test", rows });
     const answer = under({ fromNm: 600 }, { film: [{ material: infrared, thicknessNm: 100 }] });
     expect(answer.colour).toBeNull();
+    const front = { thick: [{ material: infrared, thicknessMm: 3 }] };
+    expect(under({ fromNm: 600 }, { seenFrom: front }).colour).toBeNull();
     // A quarter wave of index 2, 800 nm.
     expectClose(answer.reflectance_minimum_nm ?? 0, 800, {
       absolute: 25,

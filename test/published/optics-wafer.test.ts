@@ -68,7 +68,10 @@ describe("bare silicon of Green (2008), photons", () => {
     [50, 300, 1200, 11.1],
   ])("with random pyramids of %f deg, from %d to %d nm reflects %f %%", (facetAngleDeg, fromNm, toNm, percent) => {
     const bare = wafer(pyramids(facetAngleDeg), fromNm, toNm).weightedReflectancePercent(2, 0);
-    expectClose(bare, percent, { absolute: 0.06, because: "printed to 0.1 and fractions traced to +-0.003" });
+    expectClose(bare, percent, {
+      absolute: 0.07,
+      because: "printed to 0.1; a few patches of texture more or less move it by 0.02",
+    });
   });
 });
 

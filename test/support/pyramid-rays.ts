@@ -1,92 +1,137 @@
 /**
- * A small ray tracer for random upright pyramids, which regenerates the fractions of light that bounce each way. The surface
- * is the union of endless square pyramids whose apexes lie at random places and heights; light comes straight down and is
- * mirrored until it leaves. The facets it meets are named after the first one ("+x") and the first turn aside ("+y"), which
- * folds the symmetric ways into one.
+ * A small ray tracer for upright pyramids, which regenerates the fractions of light that bounce each way. The surface is the
+ * union of endless square pyramids; their apexes lie at random places and heights, or on a square lattice at one height. Light
+ * comes straight down, or aslant, and is mirrored until it leaves. The facets it meets are named after the first one ("+x") and
+ * the first turn aside ("+y"), which folds the symmetric ways into one.
  */
-import { random as seeded } from "../../engine/index.ts";
+import { type Random, random as seeded } from "../../engine/index.ts";
 
-type Vector = [number, number, number];
+export type Direction = [number, number, number];
 
-export interface TraceOptions {
+export interface TextureOptions {
   facetAngleDeg: number;
-  rays: number;
-  /** Apex heights are uniform over this, in units of the mean distance between apexes. */
-  heightSpread: number;
+  /** Left out: random places. */
+  arrangement?: "random" | "regular";
+  /** Apex heights of random pyramids are uniform over this, in units of the mean distance between apexes. */
+  heightSpread?: number;
   seed: number;
 }
 
+export interface TraceOptions extends TextureOptions {
+  rays: number;
+}
+
+/** What one ray met: numbers of the facets (0 to 3: +x, -x, +y, -y), the angles of incidence there, and how it left. */
+export interface Traced {
+  facets: number[];
+  anglesRad: number[];
+  direction: Direction;
+}
+
 const names = ["+x", "-x", "+y", "-y"] as const;
-/** The patch is this many mean distances wide; rays start in its middle three fifths. */
-const side = 26;
+/** A random patch is this many mean distances wide; rays start in its middle three fifths. */
+const randomSide = 26;
+/** A regular one is wide enough for light that leaves its middle cell: it bounces between next neighbours only. */
+const regularSide = 7;
 const mostBounces = 12;
 
-/** Fraction of the light by way, for instance "+x -x" -> 0.65. */
-export function traceWays({ facetAngleDeg, rays, heightSpread, seed }: TraceOptions): Map<string, number> {
-  const random = seeded(seed);
-  const apexes = Array.from(
-    { length: side * side },
-    (): Vector => [
-      random.uniform(0, side),
-      random.uniform(0, side),
-      random.uniform(0, heightSpread || Number.MIN_VALUE),
-    ],
-  );
-  const tilt = (facetAngleDeg * Math.PI) / 180;
-  const across = Math.sin(tilt);
-  const up = Math.cos(tilt);
-  const normals: Vector[] = [
-    [across, 0, up],
-    [-across, 0, up],
-    [0, across, up],
-    [0, -across, up],
-  ];
+/** A patch of texture to send rays at. */
+export class Texture {
+  private readonly apexes: Direction[];
+  private readonly normals: Direction[];
+  private readonly top: number;
+  private readonly from: number;
+  private readonly to: number;
+
+  constructor(
+    { facetAngleDeg, arrangement = "random", heightSpread = 0, seed }: TextureOptions,
+    private readonly random: Random = seeded(seed),
+  ) {
+    const side = arrangement === "random" ? randomSide : regularSide;
+    this.apexes = Array.from(
+      { length: side * side },
+      (_, i): Direction =>
+        arrangement === "random"
+          ? [random.uniform(0, side), random.uniform(0, side), random.uniform(0, heightSpread || Number.MIN_VALUE)]
+          : [i % side, Math.floor(i / side), 0],
+    );
+    this.top = heightSpread;
+    // Whole cells of the lattice, so that each place of a cell is as likely.
+    this.from = arrangement === "random" ? 0.2 * side : Math.floor(side / 2) - 0.5;
+    this.to = arrangement === "random" ? 0.8 * side : Math.floor(side / 2) + 0.5;
+    const tilt = (facetAngleDeg * Math.PI) / 180;
+    const across = Math.sin(tilt);
+    const up = Math.cos(tilt);
+    this.normals = [
+      [across, 0, up],
+      [-across, 0, up],
+      [0, across, up],
+      [0, -across, up],
+    ];
+  }
+
+  /** A ray of this direction, falling at a place where every part of the wafer's plane is as likely. */
+  trace(direction: Direction): Traced {
+    const { from, to, top } = this;
+    const place: Direction = [this.random.uniform(from, to), this.random.uniform(from, to), top];
+    // Above all apexes, backwards along the ray. The place itself is drawn at the height of the highest apex.
+    for (let axis = 0; axis < 3; axis++) place[axis] += (direction[axis] * 1e-3) / direction[2];
+    return this.follow(place, [...direction]);
+  }
+
+  private follow(place: Direction, start: Direction): Traced {
+    const { apexes, normals } = this;
+    let direction = start;
+    const facets: number[] = [];
+    const anglesRad: number[] = [];
+    let leaving = -1;
+    while (facets.length < mostBounces) {
+      const closing = normals.map((normal) => dot(direction, normal));
+      let nearest = Number.POSITIVE_INFINITY;
+      let pyramid = -1;
+      let facet = -1;
+      for (let i = 0; i < apexes.length; i++) {
+        // A pyramid is convex: light that leaves one of its facets does not meet it again.
+        if (i === leaving) continue;
+        const hit = entry(place, apexes[i], normals, closing, nearest);
+        if (!hit) continue;
+        nearest = hit.distance;
+        pyramid = i;
+        facet = hit.facet;
+      }
+      if (pyramid < 0) break;
+      for (let axis = 0; axis < 3; axis++) place[axis] += direction[axis] * nearest;
+      const normal = normals[facet];
+      const twice = 2 * closing[facet];
+      direction = [
+        direction[0] - twice * normal[0],
+        direction[1] - twice * normal[1],
+        direction[2] - twice * normal[2],
+      ];
+      leaving = pyramid;
+      facets.push(facet);
+      anglesRad.push(Math.acos(Math.min(1, -closing[facet])));
+    }
+    return { facets, anglesRad, direction };
+  }
+}
+
+/** Fraction of the light by way, for instance "+x -x" -> 0.65, for light straight down. */
+export function traceWays({ rays, ...texture }: TraceOptions): Map<string, number> {
+  const patch = new Texture(texture);
   const ways = new Map<string, number>();
   for (let ray = 0; ray < rays; ray++) {
-    const from = 0.2 * side;
-    const start: Vector = [random.uniform(from, side - from), random.uniform(from, side - from), heightSpread + 5];
-    const way = folded(facetsMet(start, apexes, normals));
+    const way = folded(patch.trace([0, 0, -1]).facets);
     ways.set(way, (ways.get(way) ?? 0) + 1 / rays);
   }
   return ways;
 }
 
-/** Numbers (0 to 3) of the facets met by light that starts straight down. */
-function facetsMet(start: Vector, apexes: readonly Vector[], normals: readonly Vector[]): number[] {
-  const place: Vector = [...start];
-  let direction: Vector = [0, 0, -1];
-  const met: number[] = [];
-  let leaving = -1;
-  while (met.length < mostBounces) {
-    const closing = normals.map((normal) => dot(direction, normal));
-    let nearest = Number.POSITIVE_INFINITY;
-    let pyramid = -1;
-    let facet = -1;
-    for (let i = 0; i < apexes.length; i++) {
-      // A pyramid is convex: light that leaves one of its facets does not meet it again.
-      if (i === leaving) continue;
-      const hit = entry(place, apexes[i], normals, closing, nearest);
-      if (!hit) continue;
-      nearest = hit.distance;
-      pyramid = i;
-      facet = hit.facet;
-    }
-    if (pyramid < 0) break;
-    for (let axis = 0; axis < 3; axis++) place[axis] += direction[axis] * nearest;
-    const normal = normals[facet];
-    const twice = 2 * closing[facet];
-    direction = [direction[0] - twice * normal[0], direction[1] - twice * normal[1], direction[2] - twice * normal[2]];
-    leaving = pyramid;
-    met.push(facet);
-  }
-  return met;
-}
-
 /** Where a ray enters a pyramid (the part of space below all four of its planes), if it does so before `limit`. */
 function entry(
-  place: Vector,
-  apex: Vector,
-  normals: readonly Vector[],
+  place: Direction,
+  apex: Direction,
+  normals: readonly Direction[],
   closing: readonly number[],
   limit: number,
 ): { distance: number; facet: number } | null {
@@ -119,6 +164,6 @@ function folded(facets: readonly number[]): string {
   return list.map((f) => names[f]).join(" ");
 }
 
-function dot(a: Vector, b: Vector): number {
+function dot(a: Direction, b: Direction): number {
   return a[0] * b[0] + a[1] * b[1] + a[2] * b[2];
 }

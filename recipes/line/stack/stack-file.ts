@@ -5,19 +5,25 @@
  */
 import * as z from "zod/mini";
 import {
+  type FilmGoal,
   type FilmStackDescription,
+  type FilmUnknown,
   facetAngleRange,
+  gridWeights,
   type Material,
   parseQuantity,
   Refusal,
   refuse,
+  wavelengthGrid,
 } from "../../../engine/index.ts";
+import { readWeight } from "../efficiency.ts";
 import { LIGHT_NM, within } from "../goal-shape.ts";
 import type { FileReader } from "../number-table.ts";
 import { FACET_ANGLE_DEG } from "../read-line.ts";
 import { Reader, read } from "../shape.ts";
 import { readYaml } from "../yaml.ts";
-import { readFilm, type StackLayer } from "./film.ts";
+import { filmUnknowns, readFilm, type StackLayer } from "./film.ts";
+import { readStackGoal } from "./goal.ts";
 import { byName, readMaterial } from "./material.ts";
 import { readSeenFrom } from "./seen-from.ts";
 
@@ -28,9 +34,11 @@ export interface StackFile {
   film: readonly StackLayer[];
   surface: FilmStackDescription["surface"];
   substrate: Material;
+  /** What the improved film is to reach; empty without a goal. */
+  goal: FilmGoal;
 }
 
-const KEYS = ["light", "seen_from", "film", "surface", "substrate"];
+const KEYS = ["light", "seen_from", "film", "surface", "substrate", "goal"];
 const LIGHT_DEFAULTS = { fromNm: 300, toNm: 1100, stepNm: 10, angleDeg: 0 };
 
 const wavelength = read((text) => within(parseQuantity(text, "length").value, ...LIGHT_NM, "nm"));
@@ -46,11 +54,19 @@ const lightShape = z.strictObject({
     }),
   ),
   polarisation: z.optional(z.enum(["s", "p", "both"])),
-  weight: z.optional(z.enum(["photons", "power"])),
+  weight: z.optional(z.string()),
 });
 
-/** Reads a stack file. Throws a Refusal with all problems, in file order. */
-export function readStack(source: Uint8Array | string, file: string, readFile?: FileReader): StackFile {
+/**
+ * Reads a stack file. Throws a Refusal with all problems, in file order. Without `improve` a value that is left open ("may be"
+ * alone) is one of them.
+ */
+export function readStack(
+  source: Uint8Array | string,
+  file: string,
+  readFile?: FileReader,
+  options: { improve?: boolean } = {},
+): StackFile {
   const reader = new Reader(readYaml(source, file));
   const { root } = reader.yaml;
   if (typeof root !== "object" || root === null || Array.isArray(root)) {
@@ -59,19 +75,21 @@ export function readStack(source: Uint8Array | string, file: string, readFile?: 
   }
   for (const key of Object.keys(root)) if (!KEYS.includes(key)) reader.unknownKey([key], KEYS);
   const surface = readSurface(reader);
-  const light = readLight(reader, surface);
-  const seenFrom = readSeenFrom(reader);
-  const film = readFilm(reader, readFile);
+  const light = readLight(reader, surface, readFile);
+  const gridNm = light && reader.attempt(["light"], () => wavelengthGrid(light.fromNm, light.toNm, light.stepNm));
+  const seenFrom = readSeenFrom(reader, gridNm, readFile);
+  const film = readFilm(reader, readFile, options);
+  const goal = readStackGoal(reader);
   const substrate = reader.at(["substrate"]) === undefined ? "silicon" : reader.at(["substrate"]);
   const below = typeof substrate === "string" ? byName(reader, ["substrate"], substrate) : undefined;
   const layer =
     below ?? (typeof substrate === "string" ? undefined : readMaterial(reader, ["substrate"], {}, readFile));
-  if (reader.problems.length > 0 || !surface || !light || !seenFrom || !film || !layer) {
+  if (reader.problems.length > 0 || !surface || !light || !seenFrom || !film || !layer || !goal) {
     throw new Refusal(
       [...reader.problems].sort((a, b) => (a.row ?? 0) - (b.row ?? 0) || (a.column ?? 0) - (b.column ?? 0)),
     );
   }
-  return { light, seenFrom, film, surface, substrate: layer.material };
+  return { light, seenFrom, film, surface, substrate: layer.material, goal };
 }
 
 /** The stack as the engine computes it. */
@@ -85,26 +103,36 @@ export function stackDescription({ light, seenFrom, film, surface, substrate }: 
   };
 }
 
-function readLight(reader: Reader, surface: StackFile["surface"] | undefined): StackFile["light"] | undefined {
+/** What of the stack may be improved. */
+export function stackUnknowns({ film }: StackFile): FilmUnknown[] {
+  return filmUnknowns(film);
+}
+
+function readLight(
+  reader: Reader,
+  surface: StackFile["surface"] | undefined,
+  readFile: FileReader | undefined,
+): StackFile["light"] | undefined {
   const shape = reader.at(["light"]) === undefined ? {} : reader.shaped(lightShape, ["light"]);
   if (!shape) return undefined;
   const { from, to, step, angle, polarisation = "both", weight = "photons" }: z.output<typeof lightShape> = shape;
-  const light = {
-    fromNm: from ?? LIGHT_DEFAULTS.fromNm,
-    toNm: to ?? LIGHT_DEFAULTS.toNm,
-    stepNm: step ?? LIGHT_DEFAULTS.stepNm,
-    angleDeg: angle ?? LIGHT_DEFAULTS.angleDeg,
-    polarisation,
-    weight,
-  };
-  if (light.fromNm >= light.toNm) {
-    reader.add(["light"], "range-reversed", `the light goes from ${light.fromNm} nm to ${light.toNm} nm`);
-  }
-  if (surface?.kind === "pyramids" && light.angleDeg !== 0) {
+  const fromNm = from ?? LIGHT_DEFAULTS.fromNm;
+  const toNm = to ?? LIGHT_DEFAULTS.toNm;
+  const angleDeg = angle ?? LIGHT_DEFAULTS.angleDeg;
+  if (surface?.kind === "pyramids" && angleDeg !== 0) {
     const message = "light aslant on pyramids is not computed; their bounce paths are known for 0 deg only";
     reader.add(["light", "angle"], "angle-on-pyramids", message, "use angle: 0 deg, or surface: polished");
   }
-  return light;
+  if (fromNm >= toNm) {
+    reader.add(["light"], "range-reversed", `the light goes from ${fromNm} nm to ${toNm} nm`);
+    return undefined;
+  }
+  const counted = readWeight(reader, weight, { fromNm, toNm }, readFile);
+  // a table that is zero all along the light weighs nothing
+  const ends = Float64Array.of(fromNm, toNm);
+  if (!counted || !reader.attempt(["light", "weight"], () => gridWeights(ends, fromNm, toNm, counted)))
+    return undefined;
+  return { fromNm, toNm, stepNm: step ?? LIGHT_DEFAULTS.stepNm, angleDeg, polarisation, weight: counted };
 }
 
 function readSurface(reader: Reader): StackFile["surface"] | undefined {
@@ -114,9 +142,13 @@ function readSurface(reader: Reader): StackFile["surface"] | undefined {
   if (value === "pyramids") return { kind: "pyramids", facetAngleDeg: FACET_ANGLE_DEG };
   if (typeof value === "object" && value !== null && !Array.isArray(value)) {
     const angle = read((text) => within(parseQuantity(text, "angle").value, ...facetAngleRange, "deg"));
-    const shape = reader.shaped(z.strictObject({ pyramids: angle }), path);
-    return shape && { kind: "pyramids", facetAngleDeg: shape.pyramids };
+    const arrangement = z.optional(z.enum(["random", "regular"]));
+    const shape = reader.shaped(z.strictObject({ pyramids: angle, arrangement }), path);
+    if (!shape) return undefined;
+    const surface = { kind: "pyramids", facetAngleDeg: shape.pyramids } as const;
+    return shape.arrangement ? { ...surface, arrangement: shape.arrangement } : surface;
   }
-  reader.add(path, "wrong-value", `surface: "${value}" is not known here`, "polished, or { pyramids: 54.74 deg }");
+  const hint = "polished, pyramids, or { pyramids: 54.74 deg, arrangement: random }";
+  reader.add(path, "wrong-value", `surface: "${value}" is not known here`, hint);
   return undefined;
 }

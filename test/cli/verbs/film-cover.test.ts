@@ -40,10 +40,46 @@ describe("the currents of a stack", () => {
     expect(Math.abs(parts(answer) - answer.current_ma_cm2.available)).toBeLessThan(1e-9);
   });
 
-  it("name the cover's part in the text only where there is one", () => {
-    const shown = { light: { fromNm: 300, toNm: 1100, weight: "photons" } };
-    expect(filmText(filmStack(base), shown)).toMatch(/absorbed in glass and encapsulant \d\.\d{3},/);
-    expect(filmText(filmStack({ ...base, seenFrom: "air" }), shown)).not.toContain("encapsulant");
+  it("stand in the text as a ledger, a line for each place light goes, that adds up to what is available", () => {
+    const ledger = (description: FilmStackDescription) =>
+      filmText(filmStack(description), description)
+        .split("\n")
+        .map((line) => /^(.*?) {2,}(\d+\.\d{3}) +(\d+\.\d\d)$/.exec(line))
+        .filter((match) => match !== null)
+        .map(([, name, current, percent]) => ({ name, current: Number(current), percent: Number(percent) }));
+    const under = ledger(base);
+    expect(under.map(({ name }) => name)).toEqual([
+      "light available",
+      "reflected",
+      "absorbed in glass",
+      "absorbed in encapsulant",
+      "absorbed in the film, silicon nitride",
+      "into the substrate",
+    ]);
+    const [available, ...rest] = under;
+    // five numbers rounded to 0.0005 mA/cm2 and to 0.005 %
+    expect(Math.abs(rest.reduce((sum, { current }) => sum + current, 0) - available.current)).toBeLessThan(0.003);
+    expect(Math.abs(rest.reduce((sum, { percent }) => sum + percent, 0) - 100)).toBeLessThan(0.03);
+    expect(ledger({ ...base, seenFrom: "air" }).map(({ name }) => name)).toEqual([
+      "light available",
+      "reflected",
+      "absorbed in the film, silicon nitride",
+      "into the substrate",
+    ]);
+    const thick = [{ material: materialByName("encapsulant"), thicknessMm: 1 }];
+    const weight = { wavelengthNm: [300, 1100], efficiency: [0.5, 1] };
+    const film = [...base.film, { material: materialByName("silica"), thicknessNm: 20 }];
+    const more = ledger({ ...base, film, seenFrom: { thick }, light: { ...base.light, weight } });
+    expect(more.map(({ name }) => name)).toEqual([
+      "light available",
+      "reflected",
+      "absorbed in thick layer 1, encapsulant",
+      "absorbed in film layer 1, silicon nitride",
+      "absorbed in film layer 2, silica",
+      "into the substrate",
+      "collected, by quantum efficiency",
+    ]);
+    expect(more[6].current).toBeLessThan(more[5].current);
   });
 
   it("come from fractions that never leave 0 to 1, not by rounding either", () => {

@@ -31,7 +31,7 @@ describe("colour words", () => {
   test.each([
     // sRGB primaries and common swatches in CIELAB D65, from memory of published conversion tables.
     [[53.2, 80.1, 67.2], "red"],
-    [[32.3, 79.2, -107.9], "deep purple"],
+    [[32.3, 79.2, -107.9], "deep blue"],
     [[87.7, -86.2, 83.2], "light green"],
     [[97.1, -21.6, 94.5], "light yellow"],
     [[25, 18, -50], "deep blue"],
@@ -39,8 +39,43 @@ describe("colour words", () => {
     [[40, 25, 40], "brown"],
     [[55, 1, 3], "grey"],
     [[20, 1, 1], "dark grey"],
+    [[65, -4, -12], "pale blue"],
+    [[45, -4, -12], "greyish blue"],
+    [[66, -3, -8], "light bluish grey"],
+    [[25, 20, -12], "dark purple"],
+    [[8, 4, -14], "very dark blue"],
+    [[3, 3, 5], "black"],
   ] as const)("%j is %s", (lab, words) => {
     expect(colourWords(lab)).toBe(words);
+  });
+
+  test("blue holds to a larger hue angle the stronger it is", () => {
+    const at = (hueDeg: number, chroma: number) => {
+      const hue = (hueDeg * Math.PI) / 180;
+      return colourWords([30, chroma * Math.cos(hue), chroma * Math.sin(hue)]);
+    };
+    expect(at(303, 60)).toBe("deep blue");
+    expect(at(303, 20)).toBe("dark purple");
+    expect(at(310, 60)).toBe("deep purple");
+  });
+
+  test("every colour there is gets words of the vocabulary", () => {
+    const seen = new Set<string>();
+    for (let lightness = 0; lightness <= 100; lightness += 4) {
+      for (let chroma = 0; chroma <= 130; chroma += 5) {
+        for (let hueDeg = 0; hueDeg < 360; hueDeg += 5) {
+          const hue = (hueDeg * Math.PI) / 180;
+          seen.add(colourWords([lightness, chroma * Math.cos(hue), chroma * Math.sin(hue)]));
+        }
+      }
+    }
+    const hues = "red|orange|yellow|green|teal|blue|purple|purplish red|brown|olive";
+    const tints = "reddish|brownish|yellowish|greenish|bluish|purplish";
+    const vocabulary = new RegExp(
+      `^(black|white|((very dark|dark|deep|pale|greyish|light) )?(${hues})|((dark|light) )?((${tints}) )?grey)$`,
+    );
+    for (const words of seen) expect(words).toMatch(vocabulary);
+    for (const hue of [...hues.split("|"), ...tints.split("|")]) expect([...seen].join(";")).toContain(hue);
   });
 
   test("a colour at the edge of the screen is not called clipped for rounding", () => {

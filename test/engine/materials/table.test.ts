@@ -1,5 +1,5 @@
 import { describe, expect, test } from "vitest";
-import { cauchyMaterial, constantMaterial, materialByName, materialNames, tabulated } from "../../../engine/index.ts";
+import { tabulated } from "../../../engine/index.ts";
 import { unrounded } from "../../../engine/materials/unrounded.ts";
 import { expectClose } from "../../support/close.ts";
 import { refusalCode } from "../../support/refusal.ts";
@@ -73,35 +73,5 @@ describe("smooth values behind a rounded table", () => {
     const worst = (values: ArrayLike<number>) =>
       Math.max(...truth.map((value, i) => (i < 15 ? 0 : Math.abs(values[i] - values[i - 1] - (value - truth[i - 1])))));
     expect(worst(smooth)).toBeLessThan(worst(printed) / 3);
-  });
-});
-
-describe("materials by formula", () => {
-  test("a constant answers everywhere, Cauchy inside its range", () => {
-    expect(constantMaterial(1.64, 0.01).at(5000)).toEqual({ n: 1.64, k: 0.01 });
-    const cauchy = cauchyMaterial({ a: 1.9, bNm2: 2e4, rangeNm: [300, 1200] });
-    expectClose(cauchy.at(500).n, 1.9 + 2e4 / 250000, { absolute: 1e-15, because: "rounding" });
-    expect(refusalCode(() => cauchy.at(299))).toBe("outside-table");
-    expect(refusalCode(() => constantMaterial(0))).toBe("material-value");
-    expect(refusalCode(() => constantMaterial(2, -1))).toBe("material-value");
-  });
-});
-
-describe("the library", () => {
-  test("knows its names, each with a source and a range over the visible", () => {
-    for (const name of materialNames) {
-      const material = materialByName(name, name === "silicon nitride" ? { index: 2.05 } : {});
-      expect(material.source.length).toBeGreaterThan(2);
-      expect(material.rangeNm[0]).toBeLessThanOrEqual(300);
-      expect(material.rangeNm[1]).toBeGreaterThanOrEqual(1100);
-      expect(material.at(550).n).toBeGreaterThan(0.9);
-    }
-  });
-
-  test("refuses unknown names, nitride without an index, and an index where none belongs", () => {
-    expect(refusalCode(() => materialByName("unobtainium"))).toBe("unknown-material");
-    expect(refusalCode(() => materialByName("constructor"))).toBe("unknown-material");
-    expect(refusalCode(() => materialByName("silicon nitride"))).toBe("material-index");
-    expect(refusalCode(() => materialByName("silica", { index: 1.46 }))).toBe("material-index");
   });
 });

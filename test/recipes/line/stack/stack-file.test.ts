@@ -86,7 +86,7 @@ describe("a stack file", () => {
     ["90 nm", "90", ["missing-unit 4:36"]],
     ["90 nm", "may be 40..120 nm", ["not-available 4:36"]],
     ["90 nm", "-1 nm", ["out-of-bounds 4:36"]],
-    ["seen_from: air", "seen_from: [ glass ]", ["not-available 2:12"]],
+    ["seen_from: air", "seen_from: [ glass ]", ["wrong-type 2:14"]],
     ["seen_from: air", "seen_from: water", ["wrong-value 2:12"]],
     ["extinction: 0.0", "extinction: -0.1", ["out-of-bounds 7:32"]],
     ["extinction: 0.0", "extinct: 0.0", ["unknown-key 7:20"]],
