@@ -4,15 +4,18 @@
  */
 import { observe } from "./hypotheses.ts";
 import type { LightLink } from "./light-link.ts";
+import { readLight } from "./light-update.ts";
 import type { Layout, PreparedLog, PreparedRun } from "./prepare.ts";
-import { scatter } from "./priors.ts";
-import { addNoise, diagonalState, dot, project, resetLast, type State, updateScalar } from "./square-root.ts";
+import type { Scatter } from "./priors.ts";
+import { addNoise, diagonalState, dot, project, resetLast, type State } from "./square-root.ts";
 
 /** Multipliers of the scatters, one node of the hyper-parameter grid. */
 export interface Node {
   process: number;
   step: number;
   spread: number;
+  /** What they multiply. */
+  scatter: Scatter;
 }
 
 /** Predictions before each measured run: parallel arrays over `runs`. True film of the run, gauge not included. */
@@ -35,12 +38,12 @@ export interface Pass {
 }
 
 export const stepVariance = (node: Node): [number, number] => [
-  (scatter.step[0] * node.step) ** 2,
-  (scatter.step[1] * node.step) ** 2,
+  (node.scatter.step[0] * node.step) ** 2,
+  (node.scatter.step[1] * node.step) ** 2,
 ];
 export const processVariance = (node: Node): [number, number] => [
-  (scatter.process[0] * node.process) ** 2,
-  (scatter.process[1] * node.process) ** 2,
+  (node.scatter.process[0] * node.process) ** 2,
+  (node.scatter.process[1] * node.process) ** 2,
 ];
 
 /** The state a chamber starts with: the given law of its coefficients, and an unknown step. */
@@ -56,7 +59,7 @@ export function startState(coefficients: State, node: Node): State {
   return state;
 }
 
-const freshStep = (node: Node) => scatter.step.map((sd) => ({ mean: 0, sd: sd * node.step }));
+const freshStep = (node: Node) => node.scatter.step.map((sd) => ({ mean: 0, sd: sd * node.step }));
 
 export function emptyForecasts(): Forecasts {
   return { runs: [], index: [], lnThickness: [], covariance: [], logBefore: [], weights: [] };
@@ -80,7 +83,7 @@ export function runEvents(
   for (let at = from; at < to; at++) {
     const event = log.events[at];
     if (event.kind === "clean") resetLast(state, freshStep(node));
-    else if (event.kind === "service") newHardware(state, layout);
+    else if (event.kind === "service") newHardware(state, layout, node);
     else {
       walk(state, node, event.count);
       if (event.kind === "run") total += readRun(state, event, context, total);
@@ -92,12 +95,12 @@ export function runEvents(
 /** Ages the chamber by some depositions: the offset wanders. */
 export function walk(state: State, node: Node, count: number): void {
   const root = Math.sqrt(count);
-  addNoise(state, state.n - 2, scatter.walk[0] * node.step * root);
-  addNoise(state, state.n - 1, scatter.walk[1] * node.step * root);
+  addNoise(state, state.n - 2, node.scatter.walk[0] * node.step * root);
+  addNoise(state, state.n - 1, node.scatter.walk[1] * node.step * root);
 }
 
 /** A service or a controller swap: the chamber's own offset is loosened for good, not only until the next clean. */
-function newHardware(state: State, layout: Layout): void {
+function newHardware(state: State, layout: Layout, { scatter }: Node): void {
   addNoise(state, 0, scatter.service[0]);
   addNoise(state, layout.indexTerms, scatter.service[1]);
 }
@@ -119,7 +122,7 @@ function readRun(state: State, run: PreparedRun, x: ReadContext, total: number):
     x.forecasts?.weights.push([1, 0, 0]);
     return density;
   }
-  const { logDensity, weights } = observe(state, run.seen, x.step, x.process);
+  const { logDensity, weights } = observe(state, run.seen, x.step, x.process, x.node.scatter.badMeasurement);
   x.forecasts?.weights.push([weights[0], weights[1], weights[2]]);
   return logDensity;
 }
@@ -158,42 +161,4 @@ export function filmAt(
     rate: dot(hRate, state.mean),
     covariance: [dot(f1, f1) + process[0], dot(f1, f2), dot(f2, f2) + process[1]],
   };
-}
-
-/** A reflectance minimum alone informs index times thickness: an iterated linearised update, two rounds. */
-function readLight(state: State, run: PreparedRun, link: LightLink, process: [number, number]): number {
-  let density = 0;
-  for (const reading of run.light) {
-    if (reading.kind !== "reflectance_minimum_nm") continue; // weighted reflectance is flat and two-valued in thickness
-    const { hIndex, hRate } = run;
-    const prior = state.mean.slice();
-    let h: Float64Array | null = null;
-    let y = 0;
-    let r = 0;
-    const trial = { n: state.n, mean: prior.slice(), factor: state.factor };
-    for (let round = 0; round < 2; round++) {
-      const index = dot(hIndex, trial.mean);
-      const ln = dot(hRate, trial.mean) + run.known;
-      const at = link.minimum(index, ln);
-      if (at === null) return density;
-      h = hIndex.map((v, i) => at.dIndex * v + at.dLnThickness * hRate[i]);
-      y = reading.value - at.valueNm + dot(h, trial.mean);
-      r = reading.sd ** 2 + at.facetSd ** 2 + at.dIndex ** 2 * process[0] + at.dLnThickness ** 2 * process[1];
-      const f = new Float64Array(state.n);
-      project(state, h, f);
-      const alpha = r + dot(f, f);
-      const innovation = y - dot(h, prior);
-      // A minimum far from anything the film could be (another order, a wrong wafer) teaches nothing.
-      if (innovation ** 2 > 25 * alpha) return density;
-      if (round === 1) density += updateScalar(state, h, y, r);
-      else {
-        for (let i = 0; i < state.n; i++) {
-          let gain = 0;
-          for (let k = 0; k <= i; k++) gain += state.factor[i * state.n + k] * f[k];
-          trial.mean[i] = prior[i] + (gain * innovation) / alpha;
-        }
-      }
-    }
-  }
-  return density;
 }

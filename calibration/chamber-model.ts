@@ -9,7 +9,7 @@ import type { Term } from "./film-response.ts";
 import type { LightLink } from "./light-link.ts";
 import { nodeWeights } from "./nodes.ts";
 import { type Layout, type PreparedLog, type PreparedRun, rows } from "./prepare.ts";
-import { hypothesisWeights, scatter } from "./priors.ts";
+import { hypothesisWeights } from "./priors.ts";
 import type { GaugeCovariance, Settings } from "./run.ts";
 import { copyState, covariance, type State, varianceAlong } from "./square-root.ts";
 
@@ -94,7 +94,7 @@ export class ChamberModel {
       parts.push({
         weight: weight * bad,
         ...film,
-        covariance: [a + scatter.badMeasurement[0] ** 2, c, b + scatter.badMeasurement[1] ** 2],
+        covariance: [a + node.scatter.badMeasurement[0] ** 2, c, b + node.scatter.badMeasurement[1] ** 2],
       });
       parts.push({ weight: weight * unlogged, ...film, covariance: [a + step[0], c, b + step[1]] });
     }

@@ -11,7 +11,7 @@
  * (composition model of Bustarret et al., Phys. Rev. B 38, 8171 (1988)).
  */
 import { refuse } from "../engine/index.ts";
-import { assumedDeadTimeS, indexPriors, type Prior, ratePriors, transientDepositions } from "./priors.ts";
+import { assumedDeadTimeS, type Prior, type Priors, standardPriors, transientDepositions } from "./priors.ts";
 import type { Settings } from "./run.ts";
 
 /** A setting as the model sees it. `meaning` is its built-in meaning, null for a site's own. */
@@ -68,7 +68,9 @@ export function filmResponse(
   levers: readonly Lever[],
   reference: Settings,
   aim: { index: number | null; thicknessNm: number | null },
+  priors: Priors = standardPriors,
 ): FilmResponse {
+  const { index: indexPriors, rate: ratePriors } = priors;
   const byMeaning = new Map<string, string>();
   for (const lever of levers) if (lever.meaning !== null) byMeaning.set(lever.meaning, lever.setting);
   const named = (meaning: string) => byMeaning.get(meaning) ?? null;
@@ -105,7 +107,7 @@ export function filmResponse(
     simpleLever(name, need(reference, name), "log", positive(name, meaning, reference));
   const silaneLever = silane ? gas(silane, "silane") : null;
   if (silane && silaneLever) add("silane", "index", indexPriors.silane, [silane], silaneLever);
-  const others = otherLevers(levers, reference);
+  const others = otherLevers(levers, reference, priors);
   for (const o of others) add(o.name, "index", o.index, o.settings, o.value);
 
   add("offset", "rate", { ...ratePriors.offset, mean: rateMean }, [], always);
@@ -154,16 +156,21 @@ interface OtherLever {
 }
 
 /** Levers beyond gas and time: one row a meaning. */
-const otherMeanings: Record<string, { how: "log" | "linear"; index: Prior; rate: Prior }> = {
-  power: { how: "log", index: indexPriors.power, rate: ratePriors.power },
-  pressure: { how: "log", index: indexPriors.pressure, rate: ratePriors.pressure },
-  temperature: { how: "linear", index: indexPriors.temperature, rate: ratePriors.temperature },
-  on_time: { how: "log", index: indexPriors.duty, rate: ratePriors.duty },
-  off_time: { how: "log", index: indexPriors.duty, rate: { ...ratePriors.duty, mean: -ratePriors.duty.mean } },
-};
+const otherMeanings = ({
+  index,
+  rate,
+}: Priors): Record<string, { how: "log" | "linear"; index: Prior; rate: Prior }> => ({
+  power: { how: "log", index: index.power, rate: rate.power },
+  pressure: { how: "log", index: index.pressure, rate: rate.pressure },
+  temperature: { how: "linear", index: index.temperature, rate: rate.temperature },
+  on_time: { how: "log", index: index.duty, rate: rate.duty },
+  off_time: { how: "log", index: index.duty, rate: { ...rate.duty, mean: -rate.duty.mean } },
+});
 
-function otherLevers(levers: readonly Lever[], reference: Settings): OtherLever[] {
+function otherLevers(levers: readonly Lever[], reference: Settings, priors: Priors): OtherLever[] {
   const found: OtherLever[] = [];
+  const { index: indexPriors, rate: ratePriors } = priors;
+  const meanings = otherMeanings(priors);
   for (const lever of levers) {
     const { setting, meaning } = lever;
     if (meaning === "silane" || meaning === "ammonia" || meaning === "time" || meaning === "belt_speed") continue;
@@ -184,7 +191,7 @@ function otherLevers(levers: readonly Lever[], reference: Settings): OtherLever[
       });
       continue;
     }
-    const row = meaning === null ? undefined : otherMeanings[meaning.startsWith("zone_") ? "temperature" : meaning];
+    const row = meaning === null ? undefined : meanings[meaning.startsWith("zone_") ? "temperature" : meaning];
     if (row && (row.how === "linear" || at > 0)) {
       const value = simpleLever(setting, at, row.how, 1);
       found.push({ name: setting, how: row.how, settings: [setting], index: row.index, rate: row.rate, value });

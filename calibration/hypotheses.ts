@@ -7,7 +7,7 @@
  * The merge is done on the square root: all three covariances are P + U M U' with U = [P H', E] of 3 or 4 columns, so the
  * merged factor is L chol(I + V M V') with V = L^-1 U = [L'H', L^-1 E].
  */
-import { hypothesisWeights, scatter } from "./priors.ts";
+import { hypothesisWeights, type Pair, scatter } from "./priors.ts";
 import { addNoise, dot, factorInPlace, project, type State, updatePair, updateProjected } from "./square-root.ts";
 
 /** What was seen: one or two outputs, their rows, noise and which step states they touch. */
@@ -113,6 +113,7 @@ export function observe(
   seen: Observation,
   stepVariance: readonly [number, number],
   process: readonly [number, number] = nothing,
+  badMeasurement: Pair = scatter.badMeasurement,
 ): Verdict {
   const { n } = state;
   const x = scratchFor(n);
@@ -123,7 +124,7 @@ export function observe(
   const o1 = m === 2 ? outputs[1] : o0;
   miss(state, seen, process, x);
   weigh(s, m, 0, 0, e, weighed[0]);
-  weigh(s, m, scatter.badMeasurement[o0] ** 2, scatter.badMeasurement[o1] ** 2, e, weighed[1]);
+  weigh(s, m, badMeasurement[o0] ** 2, badMeasurement[o1] ** 2, e, weighed[1]);
   teachNothing(weighed[1], m, e);
   weigh(s, m, stepVariance[o0], stepVariance[o1], e, weighed[2]);
   const l0 = logPrior[0] + weighed[0].logN;

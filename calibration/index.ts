@@ -17,8 +17,9 @@ export {
 } from "./film-law.ts";
 export { filmResponse, type Lever } from "./film-response.ts";
 export { type Untold, untold } from "./identifiability.ts";
-export type { MinimumOf } from "./light-link.ts";
+export type { MinimumOf, WeightedOf } from "./light-link.ts";
 export { type LearnOptions, LineModel } from "./line-model.ts";
+export { type Prior, type PriorOverrides, type Priors, priorsWith, standardPriors } from "./priors.ts";
 export type {
   ChamberEvent,
   ChamberLog,

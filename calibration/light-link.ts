@@ -1,38 +1,30 @@
 /**
- * How calibration sees light without knowing optics: one function from film to the reflectance minimum of the coated cell,
- * with its slopes. Built from engine's coated wafer and the facet factor.
+ * How calibration sees light without knowing optics: one function from film to what is read of the coated cell. Built from
+ * engine's coated wafer and the facet factor.
  */
 import type { FacetFactor } from "./facet.ts";
+import type { LightReading } from "./run.ts";
 
 export interface LightLink {
-  /** At an index and ln(witness thickness / nm): the minimum, its slopes, and its sd from the facet factor alone (nm). */
-  minimum(
-    index: number,
-    lnThickness: number,
-  ): { valueNm: number; dIndex: number; dLnThickness: number; facetSd: number } | null;
+  /** What a reading of this kind would be for film of an index and ln(thickness on the facet / nm); null where there is none. */
+  expected(kind: LightReading["kind"], index: number, lnFacet: number): number | null;
+  /** ln of the facet factor, and its sd. */
+  lnFacetFactor: number;
+  lnFacetSd: number;
 }
 
 /** Position of the minimum, nm, of a film of an index and a thickness on the facet, nm; null where there is none. */
 export type MinimumOf = (index: number, facetThicknessNm: number) => number | null;
+/** Weighted reflectance, percent, of the same; null outside what the optics know. */
+export type WeightedOf = MinimumOf;
 
-/** Slopes by central differences: the curve is smooth over 1 nm and 0.005, and far from its rounding. */
-export function lightLink(minimumOf: MinimumOf, facet: FacetFactor): LightLink {
+export function lightLink(minimumOf: MinimumOf, weightedOf: WeightedOf | null, facet: FacetFactor): LightLink {
   return {
-    minimum(index, lnThickness) {
-      const d = Math.exp(lnThickness) * facet.mean;
-      const value = minimumOf(index, d);
-      const up = minimumOf(index, d + 0.5);
-      const down = minimumOf(index, d - 0.5);
-      const more = minimumOf(index + 0.005, d);
-      const less = minimumOf(index - 0.005, d);
-      if (value === null || up === null || down === null || more === null || less === null) return null;
-      const dLnThickness = (up - down) * d;
-      return {
-        valueNm: value,
-        dIndex: (more - less) / 0.01,
-        dLnThickness,
-        facetSd: Math.abs(dLnThickness) * (facet.sd / facet.mean),
-      };
+    lnFacetFactor: Math.log(facet.mean),
+    lnFacetSd: facet.sd / facet.mean,
+    expected(kind, index, lnFacet) {
+      if (kind === "reflectance_minimum_nm") return minimumOf(index, Math.exp(lnFacet));
+      return weightedOf ? weightedOf(index, Math.exp(lnFacet)) : null;
     },
   };
 }

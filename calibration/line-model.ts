@@ -8,9 +8,10 @@ import { emptyForecasts, type Forecasts, type Node, runEvents, startState } from
 import { ChamberModel, type NodePass } from "./chamber-model.ts";
 import { type FacetFactor, facetFactor } from "./facet.ts";
 import { filmResponse, type Lever } from "./film-response.ts";
-import { type LightLink, lightLink, type MinimumOf } from "./light-link.ts";
+import { type LightLink, lightLink, type MinimumOf, type WeightedOf } from "./light-link.ts";
 import { hyperNodes } from "./nodes.ts";
 import { type Layout, layoutFor, type PreparedLog, prepare } from "./prepare.ts";
+import { type PriorOverrides, priorsWith } from "./priors.ts";
 import type { ChamberLog, Settings } from "./run.ts";
 import { coefficientLaw, drawChamber, hearSister, type Law, stateOf } from "./sisters.ts";
 import { copyState, type State } from "./square-root.ts";
@@ -25,6 +26,10 @@ export interface LearnOptions {
   facet: { mean: number; sd: number };
   /** Reflectance minimum of the coated cell, nm; null when there is no optics to lean on. */
   minimumOf: MinimumOf | null;
+  /** Weighted reflectance of the coated cell; left out: such readings teach nothing. */
+  weightedOf?: WeightedOf | null;
+  /** What the line file states in place of the standard priors. */
+  priors?: PriorOverrides;
 }
 
 /** A node on its way through a log. */
@@ -88,7 +93,7 @@ export class LineModel {
   readonly facet: FacetFactor;
   readonly light: LightLink | null;
   private readonly prepared: Map<string, PreparedLog>;
-  private readonly nodes = hyperNodes();
+  private readonly nodes: ReturnType<typeof hyperNodes>;
   private readonly generic = new Map<string, GenericRace>();
   private readonly models = new Map<string, ChamberModel>();
 
@@ -96,12 +101,14 @@ export class LineModel {
     readonly logs: readonly ChamberLog[],
     readonly options: LearnOptions,
   ) {
-    const response = filmResponse(options.levers, options.reference, options.aim);
+    const priors = priorsWith(options.priors);
+    this.nodes = hyperNodes(priors.scatter);
+    const response = filmResponse(options.levers, options.reference, options.aim, priors);
     this.layout = layoutFor(response, logs);
     this.prepared = new Map(logs.map((log) => [log.chamber, prepare(this.layout, log)]));
-    const { minimumOf, facet } = options;
+    const { minimumOf, weightedOf = null, facet } = options;
     this.facet = minimumOf ? facetFactor(facet, logs, minimumOf) : { ...facet, runs: 0, doubted: [] };
-    this.light = minimumOf ? lightLink(minimumOf, this.facet) : null;
+    this.light = minimumOf ? lightLink(minimumOf, weightedOf, this.facet) : null;
   }
 
   /** The model of one chamber. Refuses "unknown-chamber". */

@@ -5,15 +5,15 @@
  */
 import { weightsFromLogs } from "../engine/index.ts";
 import type { Node } from "./chamber-filter.ts";
-import { hyperGrid } from "./priors.ts";
+import { hyperGrid, type Scatter, scatter as standard } from "./priors.ts";
 
-export function hyperNodes(): { node: Node; logPrior: number }[] {
+export function hyperNodes(scatter: Scatter = standard): { node: Node; logPrior: number }[] {
   const out: { node: Node; logPrior: number }[] = [];
   for (const process of hyperGrid.process)
     for (const step of hyperGrid.step)
       for (const spread of hyperGrid.spread) {
         const z = [process, step, spread].map((m, i) => Math.log(m) / hyperGrid.logSd[i]);
-        out.push({ node: { process, step, spread }, logPrior: -0.5 * z.reduce((s, v) => s + v * v, 0) });
+        out.push({ node: { process, step, spread, scatter }, logPrior: -0.5 * z.reduce((s, v) => s + v * v, 0) });
       }
   return out;
 }

@@ -58,8 +58,21 @@ export const ratePriors = {
   ownLinear: { mean: 0, sd: 0.3, spread: 0.05 },
 } as const satisfies Record<string, Prior>;
 
+export type IndexPriorName = keyof typeof indexPriors;
+export type RatePriorName = keyof typeof ratePriors;
+/** A standard deviation each of index and of ln thickness (or ln rate). */
+export type Pair = readonly [index: number, lnThickness: number];
+
+export interface Scatter {
+  process: Pair;
+  step: Pair;
+  service: Pair;
+  walk: Pair;
+  badMeasurement: Pair;
+}
+
 /** Scatter, before the multipliers of the hyper-parameter nodes. */
-export const scatter = {
+export const scatter: Scatter = {
   /** True film from run to run at unchanged settings: index, ln thickness. */
   process: [0.003, 0.005],
   /** Step of the chamber's offset at a clean: index, ln rate. */
@@ -70,7 +83,40 @@ export const scatter = {
   walk: [0.0008, 0.0012],
   /** Extra scatter of a bad measurement: index, ln thickness. */
   badMeasurement: [0.03, 0.05],
-} as const;
+};
+
+/** All that a line file may overrule. */
+export interface Priors {
+  index: Readonly<Record<IndexPriorName, Prior>>;
+  rate: Readonly<Record<RatePriorName, Prior>>;
+  scatter: Scatter;
+}
+
+export const standardPriors: Priors = { index: indexPriors, rate: ratePriors, scatter };
+
+/** What a line states of its own: any field of any prior, any pair of the scatter. */
+export interface PriorOverrides {
+  index?: Partial<Record<IndexPriorName, Partial<Prior>>>;
+  rate?: Partial<Record<RatePriorName, Partial<Prior>>>;
+  scatter?: Partial<Scatter>;
+}
+
+/** The standard priors with a line's own in their place. */
+export function priorsWith(own: PriorOverrides = {}): Priors {
+  const merged = <Name extends string>(
+    table: Readonly<Record<Name, Prior>>,
+    over: Partial<Record<Name, Partial<Prior>>> = {},
+  ): Record<Name, Prior> => {
+    const out: Record<Name, Prior> = { ...table };
+    for (const name in over) out[name] = { ...table[name], ...over[name] };
+    return out;
+  };
+  return {
+    index: merged<IndexPriorName>(indexPriors, own.index),
+    rate: merged<RatePriorName>(ratePriors, own.rate),
+    scatter: { ...scatter, ...own.scatter },
+  };
+}
 
 /** Prior weights of the three readings of a run: ordinary, bad measurement, unlogged step. */
 export const hypothesisWeights = [0.94, 0.04, 0.02] as const;
@@ -91,3 +137,10 @@ export const transientDepositions = 4;
 export const faultShift = { index: 0.075, sd: 0.02, perEvent: 0.01, perRun: 0.002 } as const;
 /** What witness-to-cell comparison itself cannot do better than, relative. */
 export const facetFloor = 0.006;
+/**
+ * What the optics of the coated cell cannot do better than, whatever the reflectometer says: the texture of real wafers moves
+ * weighted reflectance by some tenths of a per cent and the minimum by about a nanometre (common practice, no source).
+ */
+export const opticsFloor = { minimumNm: 1, weightedPercent: 0.3 } as const;
+/** Chance that a reflectance reading has nothing to do with the film (wrong wafer, another order), and the range it then falls in. */
+export const strayLight = { chance: 0.04, minimumNm: 300, weightedPercent: 10 } as const;

@@ -6,7 +6,7 @@ import { normalCdf } from "../engine/index.ts";
 import { stepVariance } from "./chamber-filter.ts";
 import type { ChamberModel } from "./chamber-model.ts";
 import { nodeWeights } from "./nodes.ts";
-import { hypothesisWeights, scatter } from "./priors.ts";
+import { hypothesisWeights } from "./priors.ts";
 
 /** One measured run beside what was expected of it, in index and thickness nm. */
 export interface TrackedRun {
@@ -48,7 +48,7 @@ export function trackRecord(model: ChamberModel, last = Number.POSITIVE_INFINITY
         mean += w * m;
         second += w * (v + m * m);
         if (Number.isFinite(y)) {
-          const variances = [v, v + scatter.badMeasurement[which] ** 2, v + stepVariance(pass.node)[which]];
+          const variances = [v, v + pass.node.scatter.badMeasurement[which] ** 2, v + stepVariance(pass.node)[which]];
           for (let h = 0; h < 3; h++) rank += w * hypothesisWeights[h] * normalCdf((y - m) / Math.sqrt(variances[h]));
         }
       });

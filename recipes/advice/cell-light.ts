@@ -21,9 +21,19 @@ export interface CellLight {
 /** Indices the measured silicon-nitride family can speak for, with a margin inside engine's refusal. */
 const familyRange: readonly [number, number] = [1.81, 2.29];
 
-/** Reflectance minimum for calibration, exact: it asks a few times only. Null outside what the optics know. */
-export function minimumOf(wafer: CoatedWafer): (index: number, facetNm: number) => number | null {
-  return (index, facetNm) => (known(index, facetNm) ? wafer.reflectanceMinimumNm(index, facetNm) : null);
+/** What light on the cell would be, for calibration; each null outside what the optics know. */
+export interface FilmOptics {
+  minimumOf(index: number, facetNm: number): number | null;
+  weightedOf(index: number, facetNm: number): number | null;
+}
+
+/** The optics as calibration asks them: tens of thousands of times where many runs have only their light read. */
+export function filmOptics(wafer: CoatedWafer): FilmOptics {
+  const table = wafer.table();
+  return {
+    minimumOf: (index, facetNm) => (known(index, facetNm) ? table.reflectanceMinimumNm(index, facetNm) : null),
+    weightedOf: (index, facetNm) => (known(index, facetNm) ? table.weightedReflectancePercent(index, facetNm) : null),
+  };
 }
 
 const known = (index: number, facetNm: number) =>
@@ -33,7 +43,7 @@ const known = (index: number, facetNm: number) =>
 const pinned = 0.02;
 
 export function cellLight(line: Line, wafer: CoatedWafer, facet: FacetFactor): CellLight {
-  const table = wafer.table();
+  const { minimumOf, weightedOf } = filmOptics(wafer);
   const surface = line.wafer.surface;
   const judged = surface === "polished" || facet.runs > 0 || facet.sd / facet.mean < pinned;
   return {
@@ -43,7 +53,7 @@ export function cellLight(line: Line, wafer: CoatedWafer, facet: FacetFactor): C
     unjudged: judged
       ? null
       : `Film on a facet over film on a witness is only declared (${facet.mean.toFixed(2)} sd ${facet.sd.toFixed(2)}), never measured: reflectance on textured cells cannot be judged yet. A reflectance minimum read on a textured cell of a run whose witness is also measured would settle it.`,
-    weighted: (index, facetNm) => (known(index, facetNm) ? table.weightedReflectancePercent(index, facetNm) : null),
-    minimum: (index, facetNm) => (known(index, facetNm) ? table.reflectanceMinimumNm(index, facetNm) : null),
+    weighted: weightedOf,
+    minimum: minimumOf,
   };
 }

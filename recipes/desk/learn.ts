@@ -9,10 +9,10 @@ import type {
   LearnOptions,
   Lever,
   LightReading,
-  MinimumOf,
   Settings,
 } from "../../calibration/index.ts";
 import { canonicalUnit } from "../../engine/index.ts";
+import type { FilmOptics } from "../advice/cell-light.ts";
 import { gaugeCovariance, lightSd } from "../advice/expectation.ts";
 import type { Gauge, Line, Setting } from "../line/line.ts";
 import { goalOf } from "../line/line.ts";
@@ -170,7 +170,7 @@ export function referenceRecipe(line: Line, ledger: Ledger): { settings: Setting
 export function learnOptions(
   line: Line,
   reference: { settings: Settings; recipe: string },
-  minimumOf: MinimumOf | null,
+  optics: FilmOptics | null,
 ): LearnOptions {
   const goal = goalOf(line, reference.recipe);
   return {
@@ -178,6 +178,7 @@ export function learnOptions(
     reference: reference.settings,
     aim: { index: goal.index?.value ?? null, thicknessNm: goal.thicknessNm?.value ?? null },
     facet: line.wafer.facetFactor,
-    minimumOf,
+    minimumOf: optics?.minimumOf ?? null,
+    weightedOf: optics?.weightedOf ?? null,
   };
 }

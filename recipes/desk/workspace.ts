@@ -4,7 +4,7 @@
  */
 import { LineModel } from "../../calibration/index.ts";
 import { type CoatedWafer, Refusal, refuse } from "../../engine/index.ts";
-import { type CellLight, cellLight, minimumOf } from "../advice/cell-light.ts";
+import { type CellLight, cellLight, filmOptics } from "../advice/cell-light.ts";
 import { type Chamber, type Goal, goalOf, type Line } from "../line/line.ts";
 import { lineWafer } from "../line/line-wafer.ts";
 import { readLine } from "../line/read-line.ts";
@@ -118,7 +118,7 @@ export class Workspace {
   learn(ledger: Ledger): LineModel | null {
     const reference = referenceRecipe(this.line, ledger);
     if (!reference) return null;
-    return new LineModel(chamberLogs(this.line, ledger), learnOptions(this.line, reference, minimumOf(this.wafer)));
+    return new LineModel(chamberLogs(this.line, ledger), learnOptions(this.line, reference, filmOptics(this.wafer)));
   }
 
   /** The light of the coated cell, with the facet factor as the book has pinned it. */
