@@ -17,7 +17,7 @@ const unitOf = { thickness: "thickness_nm", index: "index" } as const;
  * - `loss_ma_cm2`: available current less what gets into the substrate.
  * - `unknowns[]`: `layer`, `material`, `what` ("thickness_nm" or "index"), `value`, the range `from` and `to`, `start` (the value
  *   named in the file or null), `at_bound` ("from", "to" or null), `at_join` (at a measured film of the nitride family, where the
- *   slope jumps), `flat` {low, high}: within it the loss grows by at most `flat_within_ma_cm2` and the goals stay met, the others
+ *   slope jumps), `extrapolated` (an index beyond the measured films), `flat` {low, high}: within it the loss grows by at most `flat_within_ma_cm2` and the goals stay met, the others
  *   held (null when goals are missed); `flat_together`: the same with the others re-optimised, by curvature; null where that
  *   says nothing.
  * - `optima[]`, best first: `values`, `loss_ma_cm2`, `weighted_reflectance_percent`, `goal_met`, `goals`; with goals
@@ -45,6 +45,7 @@ export function improvedDocument(found: ImprovedStack): Record<string, unknown> 
       start: unknown.start,
       at_bound: unknown.atBound,
       at_join: unknown.atJoin,
+      extrapolated: unknown.extrapolated,
       flat: unknown.flat,
       flat_together: unknown.flatTogether,
     })),

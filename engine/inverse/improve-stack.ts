@@ -4,6 +4,7 @@
  * often sets that index; optics alone would choose another, and the difference in mA/cm2 is what the choice costs.
  */
 import type { FilmStackDescription } from "../film-stack.ts";
+import { siliconNitride } from "../materials/nitride-family.ts";
 import { StackFigures } from "./figures.ts";
 import { type Flat, flatHeld, flatTogether } from "./flatness.ts";
 import { type FilmGoal, type Miss, metWithin } from "./goal.ts";
@@ -28,6 +29,8 @@ export interface ImprovedUnknown extends FilmUnknown {
   atBound: "from" | "to" | null;
   /** At a measured member of the nitride family, where its slopes jump and hold it. */
   atJoin: boolean;
+  /** An index beyond the measured members of the family: its absorption is carried on, not measured. */
+  extrapolated: boolean;
   /** Within which the loss grows by no more than `flatWithinMaCm2` and the goals stay met, the others held; null where they are not met. */
   flat: Flat | null;
   /** The same from the curvature, the others re-optimised; null where that says nothing (`flatTogether`). */
@@ -100,6 +103,7 @@ export function improveStack(
       ...unknown,
       value: best.values[u],
       ...whereOf(unknown, best, u),
+      extrapolated: unknown.what === "index" && siliconNitride(best.values[u]).extrapolated,
       flat: flat[u],
       flatTogether: together[u],
     })),

@@ -84,7 +84,7 @@ describe("a stack file", () => {
     ["index: 2.09, ", "index: 9.5, ", ["index-out-of-range 5:41"]],
     ["material: silica,", "material: silica, index: 1.5,", ["material-index 4:32"]],
     ["90 nm", "90", ["missing-unit 4:36"]],
-    ["90 nm", "may be 40..120 nm", ["not-available 4:36"]],
+    ["90 nm", "may be 40..120 nm", ["needs-improve 4:36"]],
     ["90 nm", "-1 nm", ["out-of-bounds 4:36"]],
     ["seen_from: air", "seen_from: [ glass ]", ["wrong-type 2:14"]],
     ["seen_from: air", "seen_from: water", ["wrong-value 2:12"]],
@@ -110,7 +110,7 @@ describe("a stack file", () => {
   it("reports several problems at once", () => {
     expect(placesOf(changed("silica", "silcia", changed("90 nm", "may be 40..120 nm", STACK)))).toEqual([
       "unknown-material 4:17",
-      "not-available 4:36",
+      "needs-improve 4:36",
     ]);
   });
 
