@@ -6,7 +6,7 @@
 import { finite, refuse } from "../errors.ts";
 import { chiSquarePdf, chiSquareQuantile } from "./chi-square.ts";
 import { checkProbability, normalCdf } from "./normal.ts";
-import { integrate } from "./quadrature.ts";
+import { gaussLegendre } from "./quadrature.ts";
 import { findRoot } from "./root.ts";
 
 /** The goal: at least one side, in the unit of the values. The target, when there is one, gives ppm. */
@@ -28,7 +28,7 @@ export interface CapabilityIndices {
   readonly ppm: number | null;
 }
 
-/** Runs below which no capability is given: at twenty the lower bound is still a quarter below the estimate. */
+/** Runs below which no capability is given: an estimate of 1.33 from twenty runs promises 0.95, from ten 0.78. */
 export const LEAST_RUNS = 20;
 
 /**
@@ -74,13 +74,16 @@ export interface Capability extends CapabilityIndices {
 export function capability(values: ArrayLike<number>, goal: CapabilityGoal, confidence = 0.95): Capability {
   const n = values.length;
   if (n < LEAST_RUNS) {
-    const hint = "with fewer the true value may be anything from half to twice the estimate";
+    const hint = "an estimate of 1.33 from ten runs promises no more than 0.78";
     refuse("too-few-runs", `capability needs ${LEAST_RUNS} runs, got ${n}`, { hint });
   }
-  let mean = 0;
-  for (let i = 0; i < n; i++) mean += finite(values[i], `value ${i + 1}`) / n;
+  // About the first value: runs that are all the same scatter by exactly nothing, and are refused.
+  const first = finite(values[0], "value 1");
+  let off = 0;
+  for (let i = 0; i < n; i++) off += (finite(values[i], `value ${i + 1}`) - first) / n;
+  const mean = first + off;
   let square = 0;
-  for (let i = 0; i < n; i++) square += (values[i] - mean) ** 2;
+  for (let i = 0; i < n; i++) square += (values[i] - first - off) ** 2;
   const sd = Math.sqrt(square / (n - 1));
   const indices = capabilityIndices(mean, sd, goal);
   return { ...indices, runs: n, mean, sd, ppkAtLeast: ppkLowerBound(indices.ppk, n, confidence) };
@@ -102,8 +105,12 @@ export function ppLimits(pp: number, n: number, confidence = 0.95): { lower: num
 export function ppkLowerBound(ppk: number, n: number, confidence = 0.95): number {
   if (!(n >= 2) || !Number.isFinite(n)) refuse("out-of-domain", `Ppk of ${n} values`);
   if (!(confidence > 0.5 && confidence < 1)) refuse("bad-probability", `a confidence of ${confidence}`);
-  const t = 3 * Math.sqrt(n) * finite(ppk, "Ppk");
-  const excess = (delta: number) => noncentralTCdf(t, n - 1, delta) - confidence;
+  // Beyond 100 only the scatter is in doubt, no longer the mean (in 1e-5): the bound is in proportion.
+  if (Math.abs(finite(ppk, "Ppk")) > 100)
+    return (Math.abs(ppk) / 100) * ppkLowerBound(100 * Math.sign(ppk), n, confidence);
+  const t = 3 * Math.sqrt(n) * ppk;
+  const cdf = noncentralT(t, n - 1);
+  const excess = (delta: number) => cdf(delta) - confidence;
   // The bound lies below the estimate by about z sqrt(1 + t^2/2n); walk down until it is enclosed.
   let reach = 2 + Math.abs(t) / Math.sqrt(n);
   while (excess(t - reach) < 0 && reach < 1e6) reach *= 2;
@@ -112,21 +119,32 @@ export function ppkLowerBound(ppk: number, n: number, confidence = 0.95): number
 
 /**
  * Probability that (Z + delta)/sqrt(chi-square/degrees) <= t: the mean of F(t sqrt(c/degrees) - delta) over the chi-square
- * law, integrated where that law has all but 1e-15 of its weight. Degrees are at least 1.
+ * law, by quadrature. About 1e-13 absolute. Degrees are at least 1.
  */
 export function noncentralTCdf(t: number, degrees: number, delta: number): number {
-  finite(t, "t");
-  finite(delta, "delta");
-  // In s = sqrt(c): its density is smooth at zero for all degrees, and about 1/sqrt(2) wide for all.
-  const low = Math.sqrt(chiSquareQuantile(1e-16, degrees));
-  const high = Math.sqrt(chiSquareQuantile(1 - 2 ** -52, degrees));
+  return noncentralT(finite(t, "t"), degrees)(finite(delta, "delta"));
+}
+
+/** The same as a function of delta: the chi-square law is worked out once. */
+function noncentralT(t: number, degrees: number): (delta: number) => number {
+  // In s = sqrt(c), the length of a normal vector, which is further than x from its mean with a chance below
+  // 2 exp(-x^2/2) for all degrees; the mean is within 0.3 of sqrt(degrees). 9 leaves 1e-16.
+  const low = Math.max(0, Math.sqrt(degrees) - 9);
+  const high = Math.sqrt(degrees) + 9;
   const scale = t / Math.sqrt(degrees);
-  const pieces = Math.ceil((high - low) * (1 + Math.abs(scale)));
-  let sum = 0;
-  for (let i = 0; i < pieces; i++) {
-    const from = low + ((high - low) * i) / pieces;
-    const to = low + ((high - low) * (i + 1)) / pieces;
-    sum += integrate((s) => normalCdf(scale * s - delta) * chiSquarePdf(s * s, degrees) * 2 * s, from, to, 20);
-  }
-  return Math.min(1, sum);
+  // Pieces on which both factors, about 1 and 1/scale wide, are smooth for twenty nodes.
+  const pieces = Math.ceil(((high - low) * (1 + Math.abs(scale))) / 3);
+  const half = (high - low) / (2 * pieces);
+  const { nodes, weights } = gaussLegendre(20);
+  const place = (i: number) => low + half * (1 + 2 * Math.floor(i / 20) + nodes[i % 20]);
+  const at = Float64Array.from({ length: 20 * pieces }, (_, i) => scale * place(i));
+  const weight = at.map((_, i) => {
+    const s = place(i);
+    return half * weights[i % 20] * chiSquarePdf(s * s, degrees) * 2 * s;
+  });
+  return (delta) => {
+    let sum = 0;
+    for (let i = 0; i < at.length; i++) sum += weight[i] * normalCdf(at[i] - delta);
+    return Math.min(1, sum);
+  };
 }

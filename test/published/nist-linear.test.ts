@@ -17,17 +17,19 @@ function fitOf(name: string, degree?: number) {
 describe("linear least squares on NIST's certified datasets", () => {
   // Thresholds: what double precision leaves after the dataset's conditioning, about a digit below what was measured.
   const cases = [
-    { name: "Norris", degree: undefined, estimates: 12, errors: 13, sd: 13 },
-    { name: "Longley", degree: undefined, estimates: 12, errors: 11.5, sd: 11.5 },
-    { name: "Wampler4", degree: 5, estimates: 7.5, errors: 13, sd: 14 },
+    { name: "Norris", degree: undefined, estimates: 12, errors: 13, sd: 13, r: 13 },
+    { name: "Longley", degree: undefined, estimates: 12, errors: 11.5, sd: 11.5, r: 13 },
+    { name: "Wampler4", degree: 5, estimates: 7.5, errors: 13, sd: 14, r: 13 },
+    // Ten powers of x near -6, not centred: condition about 1e10 once the columns are scaled. Measured 7.07 and 7.14.
+    { name: "Filip", degree: 10, estimates: 7, errors: 7, sd: 9, r: 11 },
   ];
-  for (const { name, degree, estimates, errors, sd } of cases) {
+  for (const { name, degree, estimates, errors, sd, r } of cases) {
     it(`${name}: estimates agree to ${estimates} digits, their standard errors to ${errors}`, () => {
       const { data, fit } = fitOf(name, degree);
       expect(fewestDigits(fit.coefficients, data.estimates)).toBeGreaterThanOrEqual(estimates);
       expect(fewestDigits(fit.standardErrors, data.standardErrors)).toBeGreaterThanOrEqual(errors);
       expect(digitsAgreed(fit.residualSd, data.residualSd)).toBeGreaterThanOrEqual(sd);
-      expect(digitsAgreed(fit.rSquared ?? Number.NaN, data.rSquared)).toBeGreaterThanOrEqual(13);
+      expect(digitsAgreed(fit.rSquared ?? Number.NaN, data.rSquared)).toBeGreaterThanOrEqual(r);
     });
   }
 
