@@ -12,6 +12,8 @@ import { addNoise, diagonalState, dot, project, resetLast, type State } from "./
 /** Multipliers of the scatters, one node of the hyper-parameter grid. */
 export interface Node {
   process: number;
+  /** Of the index process scatter; that of thickness is divided by it. */
+  balance: number;
   step: number;
   spread: number;
   /** What they multiply. */
@@ -42,8 +44,8 @@ export const stepVariance = (node: Node): [number, number] => [
   (node.scatter.step[1] * node.step) ** 2,
 ];
 export const processVariance = (node: Node): [number, number] => [
-  (node.scatter.process[0] * node.process) ** 2,
-  (node.scatter.process[1] * node.process) ** 2,
+  (node.scatter.process[0] * node.process * node.balance) ** 2,
+  ((node.scatter.process[1] * node.process) / node.balance) ** 2,
 ];
 
 /** The state a chamber starts with: the given law of its coefficients, and an unknown step. */
@@ -94,9 +96,10 @@ export function runEvents(
 
 /** Ages the chamber by some depositions: the offset wanders. */
 export function walk(state: State, node: Node, count: number): void {
-  const root = Math.sqrt(count);
-  addNoise(state, state.n - 2, node.scatter.walk[0] * node.step * root);
-  addNoise(state, state.n - 1, node.scatter.walk[1] * node.step * root);
+  // A chamber that steps far at its cleans wanders more in between, but less than in proportion.
+  const root = Math.sqrt(count * node.step);
+  addNoise(state, state.n - 2, node.scatter.walk[0] * root);
+  addNoise(state, state.n - 1, node.scatter.walk[1] * root);
 }
 
 /** A service or a controller swap: the chamber's own offset is loosened for good, not only until the next clean. */

@@ -1,16 +1,19 @@
 /**
  * Derivatives of a stack's reflectance and transmittance with respect to every thickness, index and extinction, exact, in one
- * pass: forward through the recursion of `stack-spectrum.ts`, then backwards by the chain rule.
+ * pass: up through the recursion of `stack-spectrum.ts` in its form without divisions, then down again by the chain rule.
  *
- * With a = d|G_0|^2 / (2 dG_0) = conj(G_0), going down the layers j = 1 to m (everything complex, R real, dR = 2 Re(a dG)):
+ * Up, with E_j = exp(-i phi_j) and B_j = X_j E_j (everything complex):
  *
- *   dG_(j-1) = ((1 - r^2) dP_j + (1 - P_j^2) dr) / (1 + r P_j)^2,      r = r_(j-1)
- *   dP_j     = exp(-i phi_j) dG_j - i P_j dphi_j
- *   dr       = (1 - r^2) / 2 (dln y_(j-1) - dln y_j),                   y the admittance, q for s and N^2 / q for p
- *   dln y    = N / q^2 dN for s, (2 / N - N / q^2) dN for p;            dq = N / q dN, as q^2 = N^2 - (n0 sin theta0)^2
+ *   X_m = r_m, Y_m = 1;   X_(j-1) = r Y_j + B_j,   Y_(j-1) = Y_j + r B_j,   r = r_(j-1);   R = |X_0|^2 / |Y_0|^2
  *
- * T = power |A|^2 with ln A = sum over layers of ln(1 + r_(j-1)) - ln(1 + r_(j-1) P_j) - i phi_j / 2, plus ln(1 + r_m): the
- * same chain once more. N = n - ik, so d/dn is dN = 1 and d/dk is dN = -i.
+ * Down, x and y being what multiplies dX and dY in d(..)/2 = Re(x dX + y dY); for R they start as conj(X_0) / |Y_0|^2 and
+ * -R / Y_0, for ln T = ln |A|^2 + const as 0 and -1 / Y_0:
+ *
+ *   by r: x Y_j + y B_j,   by B: b = x + y r,   by phi: -i b B_j;   then x = b E_j, y = x r + y
+ *
+ * Into the layers: phi_j = 4 pi q_j d_j / lambda with dq = N / q dN, as q^2 = N^2 - (n0 sin theta0)^2, and
+ * dr = (1 - r^2) / 2 (dln y_above - dln y_below), dln y = N / q^2 dN for s, (2 / N - N / q^2) dN for p. The transmittance has
+ * direct terms besides, ln |1 + r|^2 of every interface and the fading of the waves. N = n - ik: d/dn is dN = 1, d/dk is dN = -i.
  */
 import { writeTurn } from "../numerics/turn.ts";
 import { checkThicknesses, type StackParts } from "./stack-spectrum.ts";
@@ -40,46 +43,68 @@ export function stackSlopes(stack: { wavelengths: number; layers: number }): Req
 
 /** Slopes of one stack, kept with it: what they need of each layer is worked out once. */
 export class StackDerivative {
-  /** A layer and wavelength: dln y / dN of s and of p, re and im each, at [4 (i layers + layer)]. */
-  private readonly perIndex: Float64Array;
-  /** Working space, a layer: exp(-i phi), P, 1 / (1 + r P), and d/dN; then G_0 and the product of |1 + r P|^-2. */
+  /** A layer and wavelength: dphi / dN per nm of thickness, re and im, at [2 (i layers + layer)]. */
+  private readonly phase: Float64Array;
+  /** A polarisation each: dr / dN of the interface above the layer and of the one below, at [4 (i layers + layer)]. */
+  private readonly reflect: readonly Float64Array[];
+  /** Working space, a layer: E, B and Y under its upper interface, d/dN; then X_0, Y_0. */
   private readonly e: Float64Array;
   private readonly back: Float64Array;
-  private readonly inverse: Float64Array;
+  private readonly under: Float64Array;
   private readonly byIndex: Float64Array;
-  private readonly top = new Float64Array(3);
+  private readonly top = new Float64Array(4);
 
   constructor(private readonly stack: StackParts) {
-    const m = stack.layers;
-    this.perIndex = new Float64Array(4 * stack.wavelengths * m);
+    const { layers: m, wavelengths } = stack;
+    this.phase = new Float64Array(2 * wavelengths * m);
+    this.reflect = stack.polarisations.map(() => new Float64Array(4 * wavelengths * m));
     this.e = new Float64Array(2 * m);
     this.back = new Float64Array(2 * m);
-    this.inverse = new Float64Array(2 * m);
+    this.under = new Float64Array(2 * m);
     this.byIndex = new Float64Array(2 * m);
-    for (let layer = 0; layer < m; layer++) this.refresh(layer);
+    for (let layer = 0; layer < m; layer++) this.prepare(layer);
   }
 
-  /** To be called when a layer of the stack got new optical constants. */
+  /** To be called when a layer of the stack got new optical constants: its neighbours share its interfaces. */
   refresh(layer: number): void {
-    const { stack, perIndex } = this;
+    for (let j = Math.max(0, layer - 1); j <= Math.min(layer + 1, this.stack.layers - 1); j++) this.prepare(j);
+  }
+
+  private prepare(layer: number): void {
+    const { stack, phase, reflect } = this;
+    const { layers: m, turn } = stack;
     const n = stack.n[layer + 1];
     const k = stack.k[layer + 1];
     for (let i = 0; i < stack.wavelengths; i++) {
-      const q = 2 * (i * (stack.layers + 2) + layer + 1);
+      const q = 2 * (i * (m + 2) + layer + 1);
       const qRe = stack.q[q];
       const qIm = stack.q[q + 1];
-      const at = 4 * (i * stack.layers + layer);
       const size = qRe * qRe + qIm * qIm;
-      // N / q, then N / q^2, then 2 / N - N / q^2.
+      // N / q, N / q^2, and 2 / N.
       const overRe = (n[i] * qRe - k[i] * qIm) / size;
       const overIm = (-k[i] * qRe - n[i] * qIm) / size;
       const sRe = (overRe * qRe + overIm * qIm) / size;
       const sIm = (overIm * qRe - overRe * qIm) / size;
       const square = n[i] * n[i] + k[i] * k[i];
-      perIndex[at] = sRe;
-      perIndex[at + 1] = sIm;
-      perIndex[at + 2] = (2 * n[i]) / square - sRe;
-      perIndex[at + 3] = (2 * k[i]) / square - sIm;
+      const t = 2 * (i * m + layer);
+      // dphi / dN = d (4 pi / lambda) N / q = d turn N / q^2.
+      phase[t] = turn[t] * sRe - turn[t + 1] * sIm;
+      phase[t + 1] = turn[t] * sIm + turn[t + 1] * sRe;
+      for (let p = 0; p < reflect.length; p++) {
+        const isS = stack.polarisations[p] === "s";
+        const lawRe = isS ? sRe : (2 * n[i]) / square - sRe;
+        const lawIm = isS ? sIm : (2 * k[i]) / square - sIm;
+        const r = stack.r[p];
+        for (let below = 0; below < 2; below++) {
+          const at = 2 * (i * (m + 1) + layer + below);
+          const half = below === 0 ? -0.5 : 0.5;
+          const keepRe = half * (1 - r[at] * r[at] + r[at + 1] * r[at + 1]);
+          const keepIm = half * -2 * r[at] * r[at + 1];
+          const out = 4 * (i * m + layer) + 2 * below;
+          reflect[p][out] = keepRe * lawRe - keepIm * lawIm;
+          reflect[p][out + 1] = keepRe * lawIm + keepIm * lawRe;
+        }
+      }
     }
   }
 
@@ -104,143 +129,126 @@ export class StackDerivative {
         passed *= size;
       }
       for (let p = 0; p < stack.r.length; p++) {
-        this.forward(i, p);
-        const gRe = top[0];
-        const gIm = top[1];
-        reflectance[i] += share * (gRe * gRe + gIm * gIm);
-        this.backwards(i, p, gRe, -gIm, false, 2 * share, thicknessNm, reflectanceSlopes);
+        this.up(i, p);
+        const xRe = top[0];
+        const xIm = top[1];
+        const yRe = top[2];
+        const yIm = top[3];
+        const down = yRe * yRe + yIm * yIm;
+        const over = down === 0 ? 0 : 1 / down;
+        const r = (xRe * xRe + xIm * xIm) * over;
+        reflectance[i] += share * r;
+        top[0] = xRe * over;
+        top[1] = -xIm * over;
+        top[2] = -r * yRe * over;
+        top[3] = r * yIm * over;
+        this.down(i, p, false, 2 * share, thicknessNm, reflectanceSlopes);
         if (!powers || !transmittance || !transmittanceSlopes) continue;
-        const t = share * powers[p][i] * passed * top[2];
+        const t = share * powers[p][i] * passed * over;
         transmittance[i] += t;
-        this.backwards(i, p, 0, 0, true, 2 * t, thicknessNm, transmittanceSlopes);
+        top[0] = 0;
+        top[1] = 0;
+        top[2] = -yRe * over;
+        top[3] = yIm * over;
+        this.down(i, p, true, 2 * t, thicknessNm, transmittanceSlopes);
       }
     }
   }
 
-  /** The recursion from the substrate up, keeping P and 1 / (1 + r P); leaves G_0 and the product of |1 + r P|^-2 in `top`. */
-  private forward(i: number, p: number): void {
-    const { stack, e, back, inverse, top } = this;
+  /** The recursion from the substrate up, keeping B and Y of every layer; leaves X_0 and Y_0 in `top`. */
+  private up(i: number, p: number): void {
+    const { stack, e, back, under, top } = this;
     const m = stack.layers;
     const r = stack.r[p];
     const at = 2 * i * (m + 1);
-    let gRe = r[at + 2 * m];
-    let gIm = r[at + 2 * m + 1];
-    let downs = 1;
+    let xRe = r[at + 2 * m];
+    let xIm = r[at + 2 * m + 1];
+    let yRe = 1;
+    let yIm = 0;
     for (let j = 2 * m - 2; j >= 0; j -= 2) {
-      const pRe = gRe * e[j] - gIm * e[j + 1];
-      const pIm = gRe * e[j + 1] + gIm * e[j];
+      const bRe = xRe * e[j] - xIm * e[j + 1];
+      const bIm = xRe * e[j + 1] + xIm * e[j];
       const rRe = r[at + j];
       const rIm = r[at + j + 1];
-      const downRe = 1 + rRe * pRe - rIm * pIm;
-      const downIm = rRe * pIm + rIm * pRe;
-      const down = downRe * downRe + downIm * downIm;
-      const share = down === 0 ? 0 : 1 / down;
-      const vRe = downRe * share;
-      const vIm = -downIm * share;
-      back[j] = pRe;
-      back[j + 1] = pIm;
-      inverse[j] = vRe;
-      inverse[j + 1] = vIm;
-      gRe = (rRe + pRe) * vRe - (rIm + pIm) * vIm;
-      gIm = (rRe + pRe) * vIm + (rIm + pIm) * vRe;
-      downs *= share;
+      back[j] = bRe;
+      back[j + 1] = bIm;
+      under[j] = yRe;
+      under[j + 1] = yIm;
+      xRe = rRe * yRe - rIm * yIm + bRe;
+      xIm = rRe * yIm + rIm * yRe + bIm;
+      yRe += rRe * bRe - rIm * bIm;
+      yIm += rRe * bIm + rIm * bRe;
     }
-    top[0] = gRe;
-    top[1] = gIm;
-    top[2] = downs;
+    top[0] = xRe;
+    top[1] = xIm;
+    top[2] = yRe;
+    top[3] = yIm;
   }
 
   /**
-   * Down again from the derivative `a` with respect to G_0. `direct` adds what ln A of the transmittance takes from each layer
-   * itself. Slopes get `factor` Re(d).
+   * Down again from the multipliers of dX_0 and dY_0 in `top`. `direct` adds what ln T takes from each interface and layer
+   * itself. Slopes get `factor` times the real part.
    */
-  private backwards(
+  private down(
     i: number,
     p: number,
-    aRe: number,
-    aIm: number,
     direct: boolean,
     factor: number,
     thicknessNm: ArrayLike<number>,
     slopes: Float64Array,
   ): void {
-    const { stack, e, back, inverse, byIndex, perIndex } = this;
+    const { stack, e, back, under, byIndex, phase, top } = this;
     const { layers: m, wavelengths: count, turn } = stack;
+    if (m === 0) return;
     const r = stack.r[p];
+    const reflect = this.reflect[p];
     const at = 2 * i * (m + 1);
-    // dln y / dN of this polarisation.
-    const law = stack.polarisations[p] === "s" ? 0 : 2;
-    let part = 4 * i * m;
-    for (let j = 0; j < m; j++, part += 4) {
-      const b = 2 * j;
+    let xRe = top[0];
+    let xIm = top[1];
+    let yRe = top[2];
+    let yIm = top[3];
+    for (let j = 0, b = 0, t = 2 * i * m, part = 4 * i * m; j < m; j++, b += 2, t += 2, part += 4) {
       const rRe = r[at + b];
       const rIm = r[at + b + 1];
-      const pRe = back[b];
-      const pIm = back[b + 1];
-      const vRe = inverse[b];
-      const vIm = inverse[b + 1];
-      // u = a / (1 + r P)^2
-      const v2Re = vRe * vRe - vIm * vIm;
-      const v2Im = 2 * vRe * vIm;
-      const uRe = aRe * v2Re - aIm * v2Im;
-      const uIm = aRe * v2Im + aIm * v2Re;
-      const keepRe = 1 - rRe * rRe + rIm * rIm;
-      const keepIm = -2 * rRe * rIm;
-      const openRe = 1 - pRe * pRe + pIm * pIm;
-      const openIm = -2 * pRe * pIm;
-      let byRRe = uRe * openRe - uIm * openIm;
-      let byRIm = uRe * openIm + uIm * openRe;
-      let byPRe = uRe * keepRe - uIm * keepIm;
-      let byPIm = uRe * keepIm + uIm * keepRe;
+      const bRe = back[b];
+      const bIm = back[b + 1];
+      let byRRe = xRe * under[b] - xIm * under[b + 1] + yRe * bRe - yIm * bIm;
+      let byRIm = xRe * under[b + 1] + xIm * under[b] + yRe * bIm + yIm * bRe;
       if (direct) {
         const size = (1 + rRe) * (1 + rRe) + rIm * rIm;
-        byRRe += (1 + rRe) / size - (pRe * vRe - pIm * vIm);
-        byRIm += -rIm / size - (pRe * vIm + pIm * vRe);
-        byPRe -= rRe * vRe - rIm * vIm;
-        byPIm -= rRe * vIm + rIm * vRe;
+        byRRe += (1 + rRe) / size;
+        byRIm -= rIm / size;
       }
-      // byPhi = -i byP P (and -i / 2 of the wave itself)
-      const byPhiRe = byPRe * pIm + byPIm * pRe;
-      const byPhiIm = -(byPRe * pRe - byPIm * pIm) - (direct ? 0.5 : 0);
-      const t = 2 * (i * m + j);
-      const turnRe = turn[t];
-      const turnIm = turn[t + 1];
-      slopes[j * count + i] += factor * (byPhiRe * turnRe - byPhiIm * turnIm);
-      // dr = (1 - r^2) / 2 (dln y above - dln y below)
-      const hRe = (byRRe * keepRe - byRIm * keepIm) / 2;
-      const hIm = (byRRe * keepIm + byRIm * keepRe) / 2;
-      const lawRe = perIndex[part + law];
-      const lawIm = perIndex[part + law + 1];
+      const byBRe = xRe + yRe * rRe - yIm * rIm;
+      const byBIm = xIm + yRe * rIm + yIm * rRe;
+      const byPhiRe = byBRe * bIm + byBIm * bRe;
+      const byPhiIm = byBIm * bIm - byBRe * bRe - (direct ? 0.5 : 0);
+      slopes[j * count + i] += factor * (byPhiRe * turn[t] - byPhiIm * turn[t + 1]);
       if (j > 0) {
-        const aboveRe = perIndex[part - 4 + law];
-        const aboveIm = perIndex[part - 4 + law + 1];
-        byIndex[b - 2] += hRe * aboveRe - hIm * aboveIm;
-        byIndex[b - 1] += hRe * aboveIm + hIm * aboveRe;
+        byIndex[b - 2] += byRRe * reflect[part - 2] - byRIm * reflect[part - 1];
+        byIndex[b - 1] += byRRe * reflect[part - 1] + byRIm * reflect[part - 2];
       }
-      // dphi = 4 pi d / lambda (N / q) dN, and turn = 4 pi q / lambda, so dphi / dN = d turn N / q^2.
-      const wayRe = thicknessNm[j] * (turnRe * perIndex[part] - turnIm * perIndex[part + 1]);
-      const wayIm = thicknessNm[j] * (turnRe * perIndex[part + 1] + turnIm * perIndex[part]);
-      byIndex[b] = byPhiRe * wayRe - byPhiIm * wayIm - (hRe * lawRe - hIm * lawIm);
-      byIndex[b + 1] = byPhiRe * wayIm + byPhiIm * wayRe - (hRe * lawIm + hIm * lawRe);
-      aRe = byPRe * e[b] - byPIm * e[b + 1];
-      aIm = byPRe * e[b + 1] + byPIm * e[b];
+      const wayRe = thicknessNm[j] * phase[t];
+      const wayIm = thicknessNm[j] * phase[t + 1];
+      byIndex[b] = byPhiRe * wayRe - byPhiIm * wayIm + byRRe * reflect[part] - byRIm * reflect[part + 1];
+      byIndex[b + 1] = byPhiRe * wayIm + byPhiIm * wayRe + byRRe * reflect[part + 1] + byRIm * reflect[part];
+      const nextYRe = xRe * rRe - xIm * rIm + yRe;
+      yIm += xRe * rIm + xIm * rRe;
+      yRe = nextYRe;
+      xRe = byBRe * e[b] - byBIm * e[b + 1];
+      xIm = byBRe * e[b + 1] + byBIm * e[b];
     }
-    if (m === 0) return;
-    const rRe = r[at + 2 * m];
-    const rIm = r[at + 2 * m + 1];
+    // The last interface: X_m = r_m.
     if (direct) {
+      const rRe = r[at + 2 * m];
+      const rIm = r[at + 2 * m + 1];
       const size = (1 + rRe) * (1 + rRe) + rIm * rIm;
-      aRe += (1 + rRe) / size;
-      aIm -= rIm / size;
+      xRe += (1 + rRe) / size;
+      xIm -= rIm / size;
     }
-    const keepRe = 1 - rRe * rRe + rIm * rIm;
-    const keepIm = -2 * rRe * rIm;
-    const hRe = (aRe * keepRe - aIm * keepIm) / 2;
-    const hIm = (aRe * keepIm + aIm * keepRe) / 2;
-    const lastRe = perIndex[part - 4 + law];
-    const lastIm = perIndex[part - 4 + law + 1];
-    byIndex[2 * m - 2] += hRe * lastRe - hIm * lastIm;
-    byIndex[2 * m - 1] += hRe * lastIm + hIm * lastRe;
+    const last = 4 * (i * m + m - 1) + 2;
+    byIndex[2 * m - 2] += xRe * reflect[last] - xIm * reflect[last + 1];
+    byIndex[2 * m - 1] += xRe * reflect[last + 1] + xIm * reflect[last];
     for (let j = 0; j < m; j++) {
       // dN = dn - i dk
       slopes[(m + j) * count + i] += factor * byIndex[2 * j];

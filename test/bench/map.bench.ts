@@ -12,6 +12,8 @@ import { type WeightedMapInput, weightedMap } from "../../engine/optics/weighted
 import { gridWeights } from "../../engine/sunlight/weighting.ts";
 import { coverLight } from "../../engine/surface/cover.ts";
 import { pathSum } from "../../engine/surface/path-sum.ts";
+import { pyramidPaths } from "../../engine/surface/pyramids.ts";
+import { coatedWafer } from "../../engine/wafer.ts";
 import { wavelengthGrid } from "../../engine/wavelength-grid.ts";
 import type { Bench, Way } from "./harness.ts";
 import { mapText } from "./rivals/problems.ts";
@@ -77,7 +79,43 @@ function versus(name: string, program: Program, goes: number): Bench {
   };
 }
 
+const paths = pathSum(pyramidPaths("random", 52));
+const exitsRad = paths.paths.map((path) => path.exitRad);
+const onPyramids: WeightedMapInput = {
+  ...input,
+  paths,
+  cover: coverLight({ seenFrom: "air", wavelengthNm, exitsRad }),
+};
+
+/** Six angles of incidence, two polarisations at each, where the polished one has one of each. */
+const pyramids: Bench = {
+  title: "the same map on random pyramids of 52 deg",
+  a: { name: "pyramids", run: () => weightedMap(onPyramids)[call++ % (SIDE * SIDE)] },
+  b: { name: "polished", run: () => weightedMap(input)[call++ % (SIDE * SIDE)] },
+  check() {
+    const wafer = coatedWafer({
+      surface: { kind: "pyramids", facetAngleDeg: 52 },
+      seenFrom: "air",
+      fromNm: 300,
+      toNm: 1100,
+      weight: "photons",
+    });
+    const map = weightedMap(onPyramids);
+    for (const [row, column] of [
+      [0, 0],
+      [SIDE / 2, SIDE / 3],
+      [SIDE - 1, SIDE - 1],
+    ].map((place) => place.map(Math.floor))) {
+      const film = wafer.weightedReflectancePercent(1.95 + (0.18 * row) / SIDE, input.fromNm + column * input.stepNm);
+      const difference = Math.abs(film / 100 - map[row * SIDE + column]);
+      if (!(difference < AGREE)) throw new Error(`row ${row}, column ${column}: apart by ${difference}`);
+    }
+  },
+  rounds: 21,
+};
+
 export const benches: Bench[] = [
+  pyramids,
   versus("C", plainC, 1),
   versus("C with vectors", vectorC, 2),
   versus("numpy", numpy, 1),
