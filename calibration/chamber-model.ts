@@ -6,6 +6,7 @@ import { cholesky } from "../engine/index.ts";
 import { type Forecasts, filmAt, type Node, processVariance, stepVariance, walk } from "./chamber-filter.ts";
 import type { FilmLaw, FilmPart } from "./film-law.ts";
 import type { Term } from "./film-response.ts";
+import { type Bias, noBias } from "./gauge-bias.ts";
 import type { LightLink } from "./light-link.ts";
 import { nodeWeights } from "./nodes.ts";
 import { type Layout, type PreparedLog, type PreparedRun, rows } from "./prepare.ts";
@@ -48,6 +49,8 @@ export class ChamberModel {
     readonly context: {
       sisters: readonly { chamber: string; readings: number }[];
       light: LightLink | null;
+      /** What the gauge of the next reading reads too high, where somebody knows. */
+      gauge?: Bias;
       /** Every node that started, those dropped on the way included: their forecasts end where they were dropped. */
       entrants: readonly Omit<NodePass, "logAfter">[];
     },
@@ -80,15 +83,20 @@ export class ChamberModel {
     return { parts };
   }
 
-  /** What the gauge would read of that film: the same with its inexactness, bad measurements included. */
-  measuredLaw(settings: Settings, gauge: GaugeCovariance): FilmLaw {
+  /**
+   * What the gauge would read of that film: the same with its inexactness, bad measurements included, and what it reads too
+   * high with the uncertainty of that.
+   */
+  measuredLaw(settings: Settings, gauge: GaugeCovariance, bias: Bias = this.context.gauge ?? noBias): FilmLaw {
     const parts: FilmPart[] = [];
     const [ordinary, bad, unlogged] = hypothesisWeights;
-    for (const { film, weight, node } of this.each(settings)) {
-      const d = Math.exp(film.lnThickness);
-      const a = film.covariance[0] + gauge[0];
-      const c = film.covariance[1] + gauge[1] / d;
-      const b = film.covariance[2] + gauge[2] / (d * d);
+    for (const { film: real, weight, node } of this.each(settings)) {
+      const thickness = Math.exp(real.lnThickness);
+      const d = Math.max(thickness + bias.thicknessNm, 0.5 * thickness);
+      const film = { index: real.index + bias.index, lnThickness: Math.log(d) };
+      const a = real.covariance[0] + gauge[0] + bias.covariance[0];
+      const c = (real.covariance[1] * thickness + gauge[1] + bias.covariance[1]) / d;
+      const b = (real.covariance[2] * thickness ** 2 + gauge[2] + bias.covariance[2]) / (d * d);
       const step = stepVariance(node);
       parts.push({ weight: weight * ordinary, ...film, covariance: [a, c, b] });
       parts.push({

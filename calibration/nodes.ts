@@ -8,14 +8,22 @@ import type { Node } from "./chamber-filter.ts";
 import { hyperGrid, type Scatter, scatter as standard } from "./priors.ts";
 
 export function hyperNodes(scatter: Scatter = standard): { node: Node; logPrior: number }[] {
-  const out: { node: Node; logPrior: number }[] = [];
-  for (const process of hyperGrid.process)
-    for (const step of hyperGrid.step)
-      for (const spread of hyperGrid.spread) {
-        const z = [process, step, spread].map((m, i) => Math.log(m) / hyperGrid.logSd[i]);
-        out.push({ node: { process, step, spread, scatter }, logPrior: -0.5 * z.reduce((s, v) => s + v * v, 0) });
-      }
-  return out;
+  const { process, balance, step, spread, logSd } = hyperGrid;
+  const logPrior = (value: number, sd: number) => -0.5 * (Math.log(value) / sd) ** 2;
+  return process.flatMap((p) =>
+    balance.flatMap((b) =>
+      step.flatMap((s) =>
+        spread.map((c) => ({
+          node: { process: p, balance: b, step: s, spread: c, scatter },
+          logPrior:
+            logPrior(p, logSd.process) +
+            logPrior(b, logSd.balance) +
+            logPrior(s, logSd.step) +
+            logPrior(c, logSd.spread),
+        })),
+      ),
+    ),
+  );
 }
 
 /** Normalised weights from log evidences. */

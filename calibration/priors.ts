@@ -118,15 +118,19 @@ export function priorsWith(own: PriorOverrides = {}): Priors {
   };
 }
 
-/** Prior weights of the three readings of a run: ordinary, bad measurement, unlogged step. */
-export const hypothesisWeights = [0.94, 0.04, 0.02] as const;
+/** Prior weights of the three readings of a run: ordinary, bad measurement (2 to 5 in 100 are gross slips), unlogged step. */
+export const hypothesisWeights = [0.945, 0.035, 0.02] as const;
 
-/** Multipliers of (process, step and walk, chamber spread) and the sd of their logarithms: 4 x 3 x 2 nodes. */
+/**
+ * Multipliers of (process, step and walk, chamber spread) and the sd of their logarithms. `balance` splits the process scatter:
+ * the index's is multiplied by it and the thickness's divided, because a reactor steady in rate need not be steady in index.
+ */
 export const hyperGrid = {
   process: [0.55, 0.8, 1.2, 1.75],
+  balance: [0.8, 1, 1.25],
   step: [0.45, 1, 2.2],
   spread: [0.8, 1.8],
-  logSd: [0.5, 0.7, 0.5],
+  logSd: { process: 0.5, balance: 0.25, step: 0.7, spread: 0.5 },
 } as const;
 
 /** Assumed ignition time about which the dead time enters linearly, s. */
@@ -144,3 +148,115 @@ export const facetFloor = 0.006;
 export const opticsFloor = { minimumNm: 1, weightedPercent: 0.3 } as const;
 /** Chance that a reflectance reading has nothing to do with the film (wrong wafer, another order), and the range it then falls in. */
 export const strayLight = { chance: 0.04, minimumNm: 300, weightedPercent: 10 } as const;
+/**
+ * Sizes a fault comes in, each of either sign, with what share of faults; and the chance that one begins at a clean or
+ * service (perEvent) or at any measured run (perRun). Index: as above, or a large one (a valve left open). Rate (ln): power
+ * or generator, pressure gauge, time base, boat position move it by some 10 %; a generator at half power or a boat in the
+ * wrong place by 25 %. Sizes and shares are common practice, no source; the chances were set by the false alarms of 200
+ * virtual chambers.
+ */
+export const shiftFaults = {
+  index: {
+    sizes: [
+      { by: faultShift.index, sd: faultShift.sd, share: 0.85 },
+      { by: 0.16, sd: 0.05, share: 0.15 },
+    ],
+    perEvent: 0.02,
+    perRun: faultShift.perRun,
+  },
+  rate: {
+    sizes: [
+      { by: 0.1, sd: 0.03, share: 0.7 },
+      { by: 0.25, sd: 0.08, share: 0.3 },
+    ],
+    perEvent: 0.005,
+    perRun: 0.0003,
+  },
+} as const;
+
+/**
+ * What a lying controller or gauge is thought to do, before the readings are asked. Weights need not add up to one; they
+ * are chances relative to each other, and decide only where the readings do not. Common practice, no source.
+ */
+export const causePriors = {
+  /** Relative error of a controller that has gone wrong: most are found at a few per cent, 10 % would be seen at the tool. */
+  controller: 0.03,
+  /** A thermocouple or zone that has gone wrong, degrees. */
+  temperature: 8,
+  /** A gauge that has gone wrong: offset of the index, factor of the thickness. About twice a usual day-to-day offset. */
+  gaugeIndex: 0.01,
+  gaugeThickness: 0.015,
+  weights: {
+    /** Nothing has changed: the misses are scatter. Most questions are asked on a bad day. */
+    ordinary: 0.4,
+    /** The chamber moved as it does at a clean, and nobody wrote it down. */
+    step: 0.12,
+    /** A service that moved the chamber itself, as another chamber of its kind would differ. */
+    serviceStep: 0.2,
+    /** Flow controllers drift and are swapped more than anything else that sets a film. */
+    silane: 0.08,
+    ammonia: 0.08,
+    nitrogen: 0.05,
+    power: 0.06,
+    pressure: 0.06,
+    temperature: 0.04,
+    /** A clock does not drift; a late ignition or an early end does happen. */
+    time: 0.04,
+    belt_speed: 0.05,
+    other: 0.04,
+    gaugeIndex: 0.03,
+    gaugeThickness: 0.03,
+    leak: 0.03,
+  },
+  /** How likely it began at a clean, service or entered change rather than at one of the latest runs, each. */
+  onsetEvent: 0.25,
+  onsetRun: 0.1,
+  /**
+   * Chance that what was done at the tool also brought back the transient that follows a clean: at a service written down
+   * as often as not, at a run only if somebody opened the tool and said nothing. A step is a clean nobody wrote down, or
+   * no clean at all.
+   */
+  restartAtService: 0.5,
+  restartAtRun: 0.1,
+  restartAtStep: 0.5,
+} as const;
+/**
+ * A shift that all chambers share (a gauge, the gas supply): sd of index and ln thickness; the chance that one begins at a
+ * measured run of the line, and that instead a chamber has moved so on its own. Common practice, no source; the chances were
+ * set by the false alarms of virtual lines.
+ */
+export const commonShift = { sd: [0.02, 0.04] as Pair, perRun: 0.003, own: 0.02 } as const;
+/**
+ * How a gauge wanders beside its reference wafer, in (index, thickness nm): lamp, alignment and temperature move an
+ * ellipsometer by some 0.0001 and 0.01 nm a day, in one direction for a month or two (0.007 over two months, 0.02 over a
+ * year). How fast this one does the readings decide, through the multipliers `paceTimes`. A certified wafer finds the gauge
+ * within `start` of the truth. Where no reference was read for long, no more than `unseen` is feared: a gauge further out
+ * moves all chambers at once and is noticed. A reference read further than `farOff` from the others is another wafer or a
+ * slip. Common practice, no source.
+ */
+export const gaugeDrift = {
+  pacePerDay: [0.00013, 0.013],
+  memoryDays: 60,
+  paceTimes: [0.5, 1, 2],
+  logSdOfPace: 1,
+  start: [0.02, 2],
+  unseen: [0.006, 0.6],
+  farOff: [0.1, 10],
+  /** Chance that a reference reading is none (a slip, dust, another spot), and squared surprise from which that is asked. */
+  slip: 0.02,
+  surprise: 25,
+} as const;
+/**
+ * Mistakes of reading, each as a share of all readings, within the 4 % that are bad in one way or another (common practice,
+ * no source): units slipped, a wafer of the wrong kind, exchanged with one other given run. The index read of a wrong wafer
+ * is off by waferIndexSd. A facet factor whose logarithm is under leastFacet tells no wafers apart. No film has a minimum
+ * of light under leastMinimumNm.
+ */
+export const readingSlips = {
+  unit: 0.004,
+  wafer: 0.012,
+  waferIndexSd: 0.03,
+  leastFacet: 0.03,
+  exchanged: 0.001,
+  leastMinimumNm: 20,
+} as const;

@@ -28,12 +28,15 @@ export interface TrackedRun {
   step: number;
 }
 
-/** Replays the forecasts of a model (of the `last` runs, or all), with the node weights as they stood before each run. */
+/**
+ * Replays the forecasts of a model (of the `last` runs, or all), with the node weights as they stood before each run: nodes
+ * that later fell hopelessly behind had their say until then.
+ */
 export function trackRecord(model: ChamberModel, last = Number.POSITIVE_INFINITY): TrackedRun[] {
-  const { passes } = model;
   const first = Math.max(0, model.runs.length - last);
   return model.runs.slice(first).map((run, at) => {
     const i = first + at;
+    const passes = model.context.entrants.filter((entrant) => i < entrant.forecasts.runs.length);
     const weights = nodeWeights(passes.map((p) => p.logBefore + p.forecasts.logBefore[i]));
     const [gn, , gl] = run.gauge;
     const output = (which: 0 | 1, gauge: number, y: number) => {
@@ -63,9 +66,7 @@ export function trackRecord(model: ChamberModel, last = Number.POSITIVE_INFINITY
     const yLn = run.yRate + run.known;
     const n = output(0, gn, run.yIndex);
     const l = output(1, gl, yLn);
-    const after = nodeWeights(
-      passes.map((p) => p.logBefore + (p.forecasts.logBefore[i + 1] ?? p.logAfter - p.logBefore)),
-    );
+    const after = nodeWeights(passes.map((p) => logWeightAfter(model, p, i)));
     let suspect = 0;
     let step = 0;
     passes.forEach((p, node) => {
@@ -121,4 +122,11 @@ export function coverageOf(record: readonly TrackedRun[]): Coverage | null {
   return readings === 0
     ? null
     : { readings, inside: inside / readings, meanSquare: squares ? square / squares : Number.NaN };
+}
+
+/** Log weight of a node after its run `i`; minus infinity for one dropped right there. */
+function logWeightAfter(model: ChamberModel, entrant: ChamberModel["context"]["entrants"][number], i: number): number {
+  const next = entrant.forecasts.logBefore[i + 1];
+  if (next !== undefined) return entrant.logBefore + next;
+  return model.passes.find((pass) => pass.node === entrant.node)?.logAfter ?? Number.NEGATIVE_INFINITY;
 }

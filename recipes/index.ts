@@ -4,6 +4,7 @@
  */
 export type { Answer } from "./advice/decide.ts";
 export type { Mode } from "./advice/mode.ts";
+export { sharpenedWords } from "./advice/plan-words.ts";
 export {
   answerDocument,
   chamberModel,
@@ -16,8 +17,13 @@ export {
 } from "./desk/asking.ts";
 export { adopt, approve, type Changed, close, enter, sheetOf, undo } from "./desk/changing.ts";
 export { checkLine } from "./desk/checking.ts";
-export { learned } from "./desk/learned.ts";
+export { gaugeSentences, gaugesUntold } from "./desk/gauge-readings.ts";
+export { type GaugeGiven, recordGauge } from "./desk/gauge-recording.ts";
+export { type LateReadingGiven, recordReading } from "./desk/late-readings.ts";
+export { learned, recordDocument } from "./desk/learned.ts";
 export { chamberView, overview, proposalView, runsSeen, whatIf } from "./desk/looking.ts";
+export { type Planned, plan } from "./desk/planning.ts";
+export type { ReadingGiven } from "./desk/readings-given.ts";
 export {
   type Given,
   type Recorded,
@@ -27,6 +33,9 @@ export {
   recordRecipe,
   recordRun,
 } from "./desk/recording.ts";
+export { type Watched, type WatchedChamber, watch } from "./desk/watching.ts";
+export { cleanSentence, driftSentence, forecastSentence, watchDocument } from "./desk/watching-document.ts";
+export { type Why, why } from "./desk/why.ts";
 export { goalText, goalWords, lightText } from "./desk/words.ts";
 export { holdsLine, LINE_FILE, Workspace } from "./desk/workspace.ts";
 export type { Stamp, Written } from "./desk/writing.ts";
@@ -39,6 +48,10 @@ export type * from "./outlook.ts";
 export const importing = () => import("./desk/importing.ts");
 export const correcting = () => import("./desk/correcting.ts");
 export const creating = () => import("./desk/creating.ts");
+export const rehearsing = () => import("./desk/rehearsing.ts");
+export type { Figure, ScenarioScore, Score, WorldAsked, WorldPlayed } from "./desk/rehearsing.ts";
+export type { ReplaySummary } from "./desk/replay-words.ts";
+export type { Replay } from "./desk/replaying.ts";
 export type { FileSystem, Ports } from "./ports.ts";
 export { changeAt } from "./record/change-steps.ts";
 export { openChange } from "./record/changes.ts";

@@ -1,6 +1,7 @@
 /** Proposals, predictions and chamber models as text for people: the words come from below, this file lays them out. */
 import type { Chamber, ChamberView, Predicted, Proposed, Workspace } from "../../recipes/index.ts";
 import { goalText, lightText, safeText, shown } from "../../recipes/index.ts";
+import { wrap } from "./width.ts";
 
 const advices: Record<string, string> = {
   change: "CHANGE the recipe",
@@ -18,6 +19,12 @@ const headline = ({ advice, alarms }: Proposed["answer"]) =>
 
 const list = (title: string, items: readonly string[]) =>
   items.length ? [title, ...items.map((i) => `  - ${safeText(i)}`)] : [];
+
+/** The same for a terminal of 80 columns: the chamber's sentences are long and many. */
+const wrapped = (title: string, items: readonly string[]) =>
+  items.length
+    ? [title, ...items.flatMap((i) => wrap(safeText(i), 76).map((line, at) => `${at === 0 ? "  - " : "    "}${line}`))]
+    : [];
 
 export function percentText(chance: number | null): string {
   if (chance === null) return "not judged";
@@ -121,14 +128,14 @@ export function predictedText(
 export function chamberText(view: ChamberView, measured: number, sinceClean: number): string {
   return [
     `${view.chamber}, recipe ${view.recipe}: ${measured} measured runs, ${sinceClean} depositions since the clean`,
-    `goal: ${view.goalText}`,
+    ...wrap(`goal: ${view.goalText}`, 80),
     "",
     ...expectedRows([
       { title: "at the recipe in force", predicted: view.now.predicted, chance: view.now.chanceInGoal },
     ]),
     "",
-    ...list("learned", view.learned),
-    ...list("cannot tell", view.cannotTell),
-    ...list("alarms", view.alarms),
+    ...wrapped("learned", view.learned),
+    ...wrapped("cannot tell", view.cannotTell),
+    ...wrapped("alarms", view.alarms),
   ].join("\n");
 }

@@ -5,12 +5,15 @@ import {
   asQuantities,
   chamberModel,
   chamberView,
+  gaugeSentences,
+  gaugesUntold,
   type Mode,
   overview,
   parseSet,
   predict,
   predictedDocument,
   propose,
+  recordDocument,
 } from "../../recipes/index.ts";
 import { chamberText, predictedText, proposalText } from "../text/answers.ts";
 import { chamberFlag, flag, type Outcome, settingsFlag, type Verb, word } from "./verb.ts";
@@ -108,7 +111,12 @@ export const askVerbs: Verb[] = [
         return { document: lineDocument(line), text: overviewText(line, { colour: false, ascii: false, width: 100 }) };
       }
       ws.chamber(name);
-      const view = chamberView(ws, name, recipe);
+      const plain = chamberView(ws, name, recipe);
+      const view = {
+        ...plain,
+        learned: [...plain.learned, ...gaugeSentences(ws.line, ws.ledger, ws.gaugeBiases, ws.ports.now())],
+        cannotTell: [...plain.cannotTell, ...gaugesUntold(ws.line, ws.gaugeBiases)],
+      };
       const model = chamberModel(ws, name);
       const document = {
         chamber: name,
@@ -124,6 +132,7 @@ export const askVerbs: Verb[] = [
           learned: c.active,
         })),
         learned: view.learned,
+        ...recordDocument(model),
         cannot_tell: view.cannotTell,
         alarms: view.alarms,
         now: { predicted: predictedDocument(view.now.predicted), chance_in_goal: view.now.chanceInGoal },

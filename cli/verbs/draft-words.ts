@@ -9,7 +9,7 @@ interface Draft {
 }
 
 /** Fields that are named in the sentence, or are there to be counted by a program. */
-const said = new Set(["chamber", "entry", "imported_from", "site_values"]);
+const said = new Set(["chamber", "entry", "imported_from", "site_values", "reference"]);
 
 /** A field's name and value as people say them: "thickness_nm" 84 is "thickness 84 nm". */
 function field(name: string, value: unknown): string {
@@ -40,7 +40,9 @@ export function draftWords({ kind, at, by, data }: Draft): string[] {
   const what =
     kind === "correct"
       ? `correct entry ${entry}`
-      : `record a ${kind}${chamber === undefined ? "" : ` ${kind === "run" ? "of" : "on"} ${chamber}`}`;
+      : kind === "gauge"
+        ? "record a reading of a reference wafer"
+        : `record a ${kind}${chamber === undefined ? "" : ` ${kind === "run" ? "of" : "on"} ${chamber}`}`;
   const lines = Object.entries(data).flatMap(([name, value]) => {
     if (said.has(name)) return [];
     if (name === "steps") return [`  settings: ${stepWords(value)}`];

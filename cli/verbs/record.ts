@@ -1,25 +1,33 @@
-/** The verbs that write down what happened: run, record run, recipe, clean, precoat, service, note. */
+/** The verbs that write down what happened: run, record run, reading, recipe, clean, precoat, service, gauge, note. */
 import { refuse } from "../../engine/index.ts";
 import {
   correcting,
+  type ReadingGiven,
   type Recorded,
   type RunGiven,
   recordEvent,
+  recordGauge,
   recordNote,
+  recordReading,
   recordRecipe,
   recordRun,
 } from "../../recipes/index.ts";
 import { draftWords } from "./draft-words.ts";
 import { readSites } from "./sites.ts";
-import { type Call, chamberFlag, flag, type Outcome, settingsFlag, type Verb, word } from "./verb.ts";
+import { type Call, chamberFlag, flag, type Outcome, settingsFlag, toggle, type Verb, word } from "./verb.ts";
 
-const runFlags = [
-  settingsFlag("a setting the run was made with; those not given come from the recipe in force"),
+const filmFlags = [flag("index", "2.043", "index at 632.8 nm"), flag("thickness", "84.1nm", "thickness")];
+const readFlags = [
   flag("weighted-reflectance", "2.3%", "weighted reflectance read"),
   flag("reflectance-minimum", "604nm", "reflectance minimum read"),
   flag("on", "polished|cell", "what was measured on; a polished witness when left out"),
   flag("gauge", "NAME", "the gauge; the line's only one for it when left out"),
   flag("sites", "FILE.csv", "position,site,index,thickness_nm of each site"),
+  flag("spectrum", "FILE.csv", "wavelength_nm,reflectance (or reflectance_percent): kept with the reading"),
+];
+const runFlags = [
+  settingsFlag("a setting the run was made with; those not given come from the recipe in force"),
+  ...readFlags,
   flag("recipe", "NAME", "the recipe; may be left out where the chamber runs one"),
   flag("step", "NAME", "the layer, of a recipe with several"),
   flag("boat", "TEXT", "boat or carrier"),
@@ -30,18 +38,29 @@ const runFlags = [
   flag("note", "TEXT", "anything worth keeping"),
 ];
 
-function runGiven(call: Call): RunGiven {
+/** What was measured, with the files it names read. */
+function readingGiven(call: Call): ReadingGiven {
   const { args } = call;
   const sites = args.text("sites");
+  const spectrum = args.text("spectrum");
   return {
-    chamber: args.need("chamber"),
-    set: args.settings("set"),
     index: args.given("index"),
     thickness: args.given("thickness"),
     weightedReflectance: args.given("weighted-reflectance"),
     reflectanceMinimum: args.given("reflectance-minimum"),
     on: args.text("on"),
     gauge: args.text("gauge"),
+    ...(sites ? { sites: readSites(call.readFile(sites), sites) } : {}),
+    ...(spectrum ? { spectrum: { file: spectrum, bytes: call.readFile(spectrum) } } : {}),
+  };
+}
+
+function runGiven(call: Call): RunGiven {
+  const { args } = call;
+  return {
+    ...readingGiven(call),
+    chamber: args.need("chamber"),
+    set: args.settings("set"),
     recipe: args.text("recipe"),
     step: args.text("step"),
     boat: args.text("boat"),
@@ -50,20 +69,27 @@ function runGiven(call: Call): RunGiven {
     count: args.given("count"),
     kind: args.text("kind"),
     note: args.text("note"),
-    ...(sites ? { sites: readSites(call.readFile(sites), sites) } : {}),
   };
 }
 
 /** Entry and hash, or what would be written. */
 export function recorded(done: Recorded): Outcome {
-  const { entry, hash, sentence, notices, drafts } = done;
+  const { entry, hash, sentence, notices, drafts, receipts, madeBefore } = done;
   if (entry === null)
     return {
       document: { would_record: drafts },
       text: [...drafts.flatMap(draftWords), sentence].join("\n"),
       notices,
     };
-  return { document: { entry, hash, said: sentence }, text: `recorded #${entry}. ${sentence}`, notices };
+  const entries = receipts.map(({ seq }) => seq);
+  const document = {
+    entry,
+    hash,
+    said: sentence,
+    ...(entries.length > 1 ? { entries } : {}),
+    ...(madeBefore.length > 0 ? { made_before: madeBefore } : {}),
+  };
+  return { document, text: `recorded #${entries.join(", #")}. ${sentence}`, notices };
 }
 
 const run = async (call: Call) => recorded(await recordRun(call.workspace(), runGiven(call), call.stamp()));
@@ -86,18 +112,37 @@ export const recordVerbs: Verb[] = [
     name: "record run",
     does: "records a run with any of its settings and readings",
     words: [],
-    flags: [
-      chamberFlag(),
-      flag("index", "2.043", "index at 632.8 nm"),
-      flag("thickness", "84.1nm", "thickness"),
-      ...runFlags,
-    ],
+    flags: [chamberFlag(), ...filmFlags, ...runFlags],
     examples: [
       "coatwright record run --chamber A2 --set time=560s --index 2.043 --thickness 84.1nm --reflectance-minimum 604nm",
       "coatwright record run --chamber A2 --count 24",
     ],
     writes: true,
     run,
+  },
+  {
+    name: "record reading",
+    does: "adds a reading that came later to its run; a film read twice counts as the mean of both",
+    words: [],
+    flags: [
+      flag("run", "ENTRY", "number of the entry of the run", true),
+      ...filmFlags,
+      ...readFlags,
+      flag("note", "TEXT", "anything worth keeping"),
+    ],
+    examples: [
+      "coatwright record reading --run 118 --thickness 84.1nm",
+      "coatwright record reading --run 118 --reflectance-minimum 604nm --at 23:40",
+    ],
+    writes: true,
+    run: async (call) =>
+      recorded(
+        await recordReading(
+          call.workspace(),
+          { ...readingGiven(call), run: call.args.given("run") ?? "", note: call.args.text("note") },
+          call.stamp(),
+        ),
+      ),
   },
   {
     name: "record recipe",
@@ -173,6 +218,28 @@ export const recordVerbs: Verb[] = [
           call.stamp(),
         ),
       ),
+  },
+  {
+    name: "record gauge",
+    does: "a reading of a gauge's reference wafer: what the gauge reads too high is taken out of every chamber's readings",
+    words: [],
+    flags: [
+      flag("gauge", "NAME", "the gauge", true),
+      toggle("reference", "it is the reference wafer that was read"),
+      ...filmFlags,
+    ],
+    examples: ["coatwright record gauge --gauge ellipsometer --reference --index 2.041 --thickness 84.9nm"],
+    writes: true,
+    run: async (call) => {
+      const { args } = call;
+      const given = {
+        gauge: args.need("gauge"),
+        reference: args.switch("reference"),
+        index: args.given("index"),
+        thickness: args.given("thickness"),
+      };
+      return recorded(await recordGauge(call.workspace(), given, call.stamp()));
+    },
   },
   {
     name: "record note",

@@ -4,32 +4,52 @@ import { askVerbs } from "./ask.ts";
 import { changeVerbs } from "./change.ts";
 import { fileVerbs } from "./files.ts";
 import { filmVerbs } from "./film.ts";
+import { planVerbs } from "./plan.ts";
 import { recordVerbs } from "./record.ts";
+import { rehearseVerbs } from "./rehearse.ts";
 import type { Verb } from "./verb.ts";
+import { watchVerbs } from "./watch.ts";
+import { whyVerbs } from "./why.ts";
 
-const all = [...fileVerbs, ...filmVerbs, ...recordVerbs, ...askVerbs, ...changeVerbs];
+const all = [
+  ...fileVerbs,
+  ...filmVerbs,
+  ...recordVerbs,
+  ...askVerbs,
+  ...whyVerbs,
+  ...changeVerbs,
+  ...planVerbs,
+  ...watchVerbs,
+  ...rehearseVerbs,
+];
 const inOrder = [
   "new",
   "check",
   "run",
   "record run",
+  "record reading",
   "record recipe",
   "record clean",
   "record precoat",
   "record service",
+  "record gauge",
   "record note",
   "correct",
   "import",
   "film",
   "chamber",
+  "why",
   "predict",
   "propose",
+  "plan",
   "adopt",
   "approve",
   "enter",
   "close",
   "undo",
+  "watch",
   "report",
+  "rehearse",
 ];
 
 /** Every verb that can be asked for one at a time, in the order the help shows them. `converse` is the loop around them. */
@@ -49,7 +69,7 @@ function unknown(argv: readonly string[]): [string, { hint: string }] {
   if (argv[0] === "record")
     return [
       argv[1] && !argv[1].startsWith("-") ? `there is no record ${argv[1]}` : "record what?",
-      { hint: "run, recipe, clean, precoat, service or note" },
+      { hint: "run, reading, recipe, clean, precoat, service, gauge or note" },
     ];
   const near = nearestWord(
     argv[0] ?? "",

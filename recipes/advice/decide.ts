@@ -3,19 +3,13 @@
  * answers wins: is something broken? has the last change been run? is there anything to stand on? is a better recipe worth
  * it? would one more reading change the answer? does the best reach the goal at all?
  */
-import {
-  type ChamberModel,
-  chanceIn,
-  type Lever,
-  type Settings,
-  type Suspicion,
-  type TrackedRun,
-  untold,
-} from "../../calibration/index.ts";
+import { type ChamberModel, chanceIn, type Lever, type Settings, type TrackedRun } from "../../calibration/index.ts";
 import type { Chamber, Goal, Line } from "../line/line.ts";
 import { anchorUse, bindingLimits, outside } from "../line/window.ts";
 import type { Advice } from "../outlook.ts";
-import { type Alarm, alarmsFrom } from "./alarms.ts";
+import { type Alarm, type AlarmEvidence, alarmsOf } from "./alarms.ts";
+import { isPastAnchor, pastAnchor } from "./anchor.ts";
+import { untoldHere } from "./cannot-tell.ts";
 import { cautionsFor } from "./cautions.ts";
 import type { CellLight } from "./cell-light.ts";
 import { type Choice, choose, filmInside } from "./choose.ts";
@@ -47,11 +41,13 @@ export interface Question {
   stated: boolean;
   /** The last qualified recipe, from which corrections add up. */
   anchor: Settings | null;
+  /** The entry that recipe comes from. */
+  anchorEntry: number | null;
   /** Runs measured since the last event that starts tuning, and since the last clean. */
   runsSinceEvent: readonly MeasuredRun[];
   runsSinceClean: readonly MeasuredRun[];
   record: readonly TrackedRun[];
-  suspicions: readonly Suspicion[];
+  found: AlarmEvidence;
   overridden: ReadonlySet<string>;
   openChange: { change: string; state: "adopted" | "entered"; after: Settings; runsSince: number } | null;
   awaitingReadings: number;
@@ -84,7 +80,7 @@ export function decide(q: Question): Answer {
   const context = { line: q.line, goal: q.goal, light: q.light, sites: q.sites };
   const now = expectation(q.model, q.before, context);
   // Inside the anchor first. A recipe already past it cannot be held inside: there a person is asked for.
-  const pastNow = q.anchor !== null && anchorUse(q.anchor, q.before, q.line).some((use) => use.past);
+  const pastNow = isPastAnchor(q, q.before);
   const held = q.anchor !== null && !pastNow && !q.overridden.has("past_anchor");
   const best = choose({ ...q, anchor: held ? q.anchor : null });
   const moved = [...best.settings].some(([name, value]) => q.before.get(name) !== value);
@@ -94,8 +90,10 @@ export function decide(q: Question): Answer {
   const hit = lastRead ? measuredInGoal(lastRead, q.goal) === true : false;
   const done = hit && now.chanceJudged >= Math.max(doneShare * attainable, leastDone);
   const mode = q.forMode ?? modeOf(q.runsSinceEvent, q.goal, done);
-  const alarms = alarmsFrom(q.suspicions, q.overridden);
-  const because = opening(q, now);
+  const alarms = alarmsOf(q.found, q.overridden);
+  // A fault comes first: that the recipe is past its anchor is told where nothing is broken.
+  if (pastNow && !alarms.some((a) => a.certain)) alarms.push(pastAnchor(q, q.before));
+  const because = opening(q, now, alarms);
   const finish = (advice: Advice, after: Settings, more: string[]): Answer => {
     const shown = after === q.before ? now : ahead;
     return {
@@ -112,7 +110,7 @@ export function decide(q: Question): Answer {
           ...unusable(q),
           ...now.cannotTell,
           ...shown.cannotTell,
-          ...untold(q.model, q.levers).map((u) => u.sentence),
+          ...untoldHere(q.model, q.levers, q).map((u) => u.sentence),
         ]),
       ],
       alarms,
@@ -132,9 +130,10 @@ export function decide(q: Question): Answer {
     return finish("measure", q.before, [
       `Change ${q.openChange.change} was entered and no run has been measured since: run and measure it first.`,
     ]);
-  if (alarms.length > 0)
+  const asking = alarms.filter((a) => a.calls === "ask");
+  if (asking.length > 0)
     return finish("measure", q.before, [
-      ...alarms.map((a) => a.sentence),
+      ...asking.map((a) => a.sentence),
       "One more run as it is decides between a fault, a bad measurement and an ordinary offset.",
     ]);
   if (q.model.ownReadings === 0 && q.model.context.sisters.length === 0)
@@ -154,37 +153,24 @@ export function decide(q: Question): Answer {
     const noise = mode === "production" ? oneReading(q) : null;
     if (noise) return finish("measure", q.before, [noise]);
   }
+  const stopAtAnchor = (wanted: Settings): Answer => {
+    const past = pastAnchor(q, wanted);
+    alarms.splice(0, alarms.length, past, ...alarms.filter((a) => a.name !== past.name));
+    return stop([past]);
+  };
+  if (reached && isPastAnchor(q, best.settings)) return stopAtAnchor(best.settings);
   if (reached) return finish("change", best.settings, changeReasons(q, best, ahead, attainable));
 
-  if (held || pastNow) {
+  if (held) {
     const free = choose({ ...q, anchor: null });
-    const film = expectation(q.model, free.settings, context);
-    if (free.inside && q.anchor && !q.overridden.has("past_anchor") && reaches(q, film)) {
-      const past = pastAnchor(q, q.anchor, free.settings);
-      alarms.push(past);
-      return stop([past]);
-    }
+    if (free.inside && isPastAnchor(q, free.settings) && reaches(q, expectation(q.model, free.settings, context)))
+      return stopAtAnchor(free.settings);
   }
   if (!best.inside) return finish("out_of_reach", q.before, ["No settings inside the qualified window were found."]);
   return finish("out_of_reach", best.settings, [
     `Nothing inside the window reaches the goal: the nearest point has ${missWords(ahead.film, q.goal, 0).join(" and ") || "the reflectance goal unmet"}, a chance of ${asPercent(ahead.chanceJudged)}.`,
     ...bindingLimits(best.settings, q.chamber, q.line).map((f) => f.sentence),
   ]);
-}
-
-/** The correction needed would take the recipe further from the last qualified one than the line allows. */
-function pastAnchor(q: Question, anchor: Settings, wanted: Settings): Alarm {
-  const past = anchorUse(anchor, wanted, q.line).filter((use) => use.past);
-  const moves = moveWords(q.chamber, q.before, wanted).join(", ");
-  return {
-    name: "past_anchor",
-    certain: true,
-    sentence: `past_anchor: the correction needed (${moves}) would take ${past.map((use) => `${use.text} ${(100 * Math.abs(use.used)).toFixed(1)} % ${use.used < 0 ? "below" : "above"} the last qualified recipe, past the ${Number((100 * use.limit).toPrecision(3))} % allowed`).join(" and ")}: a person must look before more is corrected.`,
-    checks: [
-      "Look for a slow leak, a drifting controller or a drifting gauge.",
-      "On a ramp, or when the film is right as it is, qualify the recipe anew and state it with `record recipe`: corrections add up from there.",
-    ],
-  };
 }
 
 const overruleSentence = (q: Question, a: Alarm) =>
@@ -269,14 +255,15 @@ function oneReading(q: Question): string | null {
   return `Only the last reading (entry ${last.entry}) speaks for a change: before it the film was expected at index ${last.expectedIndex.mean.toFixed(3)}, ${last.expectedThickness.mean.toFixed(1)} nm. Measure one more run before moving anything.`;
 }
 
-/** A reading left aside as bad is said, so that nobody wonders why it moved nothing. */
-function leftAside(q: Question): string | null {
+/** A reading left aside as bad is said, so that nobody wonders why it moved nothing; where an alarm says what it was, that does. */
+function leftAside(q: Question, alarms: readonly Alarm[]): string | null {
   const last = q.record.at(-1);
   if (!last || last.suspect <= undecided[1] - last.step) return null;
+  if (alarms.some((a) => a.calls === "tell" && a.entry === last.entry)) return null;
   return `The last reading (entry ${last.entry}) is a bad measurement with ${asPercent(last.suspect)} probability and is left aside: a wrong wafer, swapped rows or a slip of units?`;
 }
 
-function opening(q: Question, now: Expectation): string[] {
+function opening(q: Question, now: Expectation, alarms: readonly Alarm[]): string[] {
   const out = outside(q.before, q.chamber, q.line).map((f) => `In force now: ${f.sentence}`);
   const cycle = q.runsSinceClean.length > 0 && q.model.log.events.some((e) => e.kind === "clean");
   const bad = new Set(q.record.filter((r) => r.suspect > undecided[1] - r.step).map((r) => r.entry));
@@ -286,8 +273,10 @@ function opening(q: Question, now: Expectation): string[] {
   if (!q.stated)
     out.push("No recipe was ever stated for this chamber: the settings of its latest run are taken as in force.");
   out.push(expectSentence("At the recipe in force", now, q.light));
-  const aside = leftAside(q);
+  const aside = leftAside(q, alarms);
   if (aside) out.push(aside);
+  for (const told of alarms.filter((a) => a.calls === "tell"))
+    out.push(told.sentence, `First checks: ${told.checks.join(" ")}`);
   const sisters = sistersSentence(q.model);
   if (sisters) out.push(sisters);
   if (q.awaitingReadings > 0)

@@ -48,7 +48,8 @@ export function gaugeCovariance(gauge: Gauge | null, sites: number): GaugeCovari
   const n = gauge?.index ?? usual.index;
   const d = gauge?.thicknessNm ?? usual.thicknessNm;
   const day = gauge?.dayToDay ?? { index: 0, thicknessNm: 0 };
-  return [n ** 2 / sites + day.index ** 2, 0, d ** 2 / sites + day.thicknessNm ** 2];
+  const cov = (gauge?.correlation ?? 0) * ((n * d) / sites + day.index * day.thicknessNm);
+  return [n ** 2 / sites + day.index ** 2, cov, d ** 2 / sites + day.thicknessNm ** 2];
 }
 
 export function lightSd(gauge: Gauge | null, kind: "reflectance_minimum_nm" | "weighted_reflectance_percent"): number {

@@ -15,7 +15,7 @@ const average = (values: (number | null)[]): number | null => {
   const read = values.filter((v): v is number => v !== null);
   return read.length === 0 ? null : read.reduce((a, b) => a + b, 0) / read.length;
 };
-const list = (names: readonly string[]) =>
+export const list = (names: readonly string[]) =>
   names.length < 2 ? names.join("") : `${names.slice(0, -1).join(", ")} and ${names.at(-1)}`;
 export const runsWord = (count: number) => `${count} run${count === 1 ? "" : "s"}`;
 

@@ -1,7 +1,7 @@
 /** Asking: what film and light to expect at any settings, and what to do next. Assembles the question, writes the answer. */
 
 import type { Settings } from "../../calibration/index.ts";
-import { type ChamberModel, suspicions, trackRecord } from "../../calibration/index.ts";
+import { type ChamberModel, trackRecord } from "../../calibration/index.ts";
 import { refuse } from "../../engine/index.ts";
 import { type Answer, decide, type Question } from "../advice/decide.ts";
 import { type Expectation, expectation } from "../advice/expectation.ts";
@@ -15,10 +15,10 @@ import { openChange } from "../record/changes.ts";
 import type { Draft } from "../record/entries.ts";
 import { proposalId } from "../record/ids.ts";
 import { basisHash, chamberRecord, proposalOn } from "../record/ledger.ts";
-import { overridesInForce } from "../record/overrides.ts";
 import { type RunRecord, wasMeasured } from "../record/timeline.ts";
 import { lastQualified, recipeInForce } from "../record/versions.ts";
-import { canonicalSettings, filmReading, leversOf, lightReadings } from "./learn.ts";
+import { alarmEvidence, overruled } from "./alarming.ts";
+import { canonicalSettings, leversOf, lightReadings } from "./learn.ts";
 import { goalWords } from "./words.ts";
 import type { Workspace } from "./workspace.ts";
 import { write } from "./writing.ts";
@@ -46,7 +46,7 @@ export function chamberModel(ws: Workspace, chamber: string): ChamberModel {
 }
 
 const measuredRun = (ws: Workspace, run: RunRecord): MeasuredRun => {
-  const film = filmReading(ws.line, run.readings);
+  const film = ws.filmOf(run);
   const light = lightReadings(ws.line, run.readings);
   const of = (kind: string) => light.find((l) => l.kind === kind)?.value ?? null;
   return {
@@ -109,11 +109,12 @@ export function question(ws: Workspace, name: string, recipe: string, forMode: M
     before: force.settings,
     stated: force.stated,
     anchor: anchor ? canonicalSettings(ws.line, anchor.steps) : null,
+    anchorEntry: anchor?.entry ?? null,
     runsSinceEvent: recent.sinceEvent,
     runsSinceClean: recent.sinceClean,
     record: trackRecord(model, 8),
-    suspicions: suspicions(model),
-    overridden: new Set(overridesInForce(ws.ledger, name, ws.ports.now()).map((o) => o.alarm)),
+    found: alarmEvidence(ws, model),
+    overridden: overruled(ws, name),
     openChange: open
       ? {
           change: open.id,

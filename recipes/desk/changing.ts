@@ -227,8 +227,10 @@ export function verdictOn(ws: Workspace, ledger: Ledger, number: number): Verdic
       `${words}: expected ${want.mean.toFixed(digits)} (${want.low.toFixed(digits)}-${want.high.toFixed(digits)}), got ${mean.toFixed(digits)}${unit}${values.length > 1 ? `, mean of ${values.length}` : ""}: ${ok ? "as expected" : "not as expected"}`,
     );
   }
-  const hits = measured.map(({ film, light }) =>
-    measuredInGoal(
+  // Expected and got are what a gauge reads; the goal is for the film itself, freed of what the gauge reads too high.
+  const hits = measured.map(({ run, light }) => {
+    const film = ws.filmOf(run);
+    return measuredInGoal(
       {
         index: film?.index ?? null,
         thicknessNm: film?.thicknessNm ?? null,
@@ -236,8 +238,8 @@ export function verdictOn(ws: Workspace, ledger: Ledger, number: number): Verdic
         weightedReflectancePercent: light.find((l) => l.kind === "weighted_reflectance_percent")?.value ?? null,
       },
       goal,
-    ),
-  );
+    );
+  });
   const inGoal = hits.filter((h) => h === true).length;
   const judged = hits.filter((h) => h !== null).length;
   const verdict = `${missed.length ? `not as expected in ${missed.join(" and ")}` : "as expected"}; ${inGoal} of ${judged} measured run${judged === 1 ? "" : "s"} in goal`;

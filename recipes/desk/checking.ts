@@ -5,6 +5,7 @@ import { readLine } from "../line/read-line.ts";
 import { BOOK } from "../record/read-book.ts";
 import { safeText } from "../record/safe-text.ts";
 import { namesWithoutView } from "../record/views.ts";
+import { gaugeSentences } from "./gauge-readings.ts";
 import { editedViews } from "./views.ts";
 import { LINE_FILE, type Workspace } from "./workspace.ts";
 
@@ -76,6 +77,12 @@ export function checkLine(ws: Workspace): Checked {
         );
     if (book.damage.length === 0) tellViews(ws, problems, warnings);
     said = withPinnedFacet(ws, said);
+    if (book.damage.length === 0) said.push(...gaugeSentences(ws.line, ledger, ws.gaugeBiases, ws.ports.now()));
+    for (const gauge of new Set(ledger.gaugeReadings.map((reading) => reading.gauge)))
+      if (!ws.line.gauges.has(gauge))
+        warnings.push(
+          `the book has reference readings of gauge ${safeText(gauge)}, which line.yaml does not declare: they are left aside`,
+        );
   }
   if (ledger.lineFile !== null && ledger.lineFile !== new TextDecoder().decode(ws.readBeside(LINE_FILE)))
     warnings.push("line.yaml has changed since the last entry; the next entry records the difference");

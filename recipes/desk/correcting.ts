@@ -11,6 +11,8 @@ import { changeId, proposalId } from "../record/ids.ts";
 import { type Measured, possibleReading } from "../record/import/cells.ts";
 import { splitSettingName } from "../record/steps.ts";
 import { recipesOf } from "../record/versions.ts";
+import { runNamed } from "./late-readings.ts";
+import { gaugeNamed } from "./readings-given.ts";
 import type { Workspace } from "./workspace.ts";
 import { type Stamp, write } from "./writing.ts";
 
@@ -37,9 +39,9 @@ const words = new Map([
 ]);
 const counts = ["count", "since_clean"];
 const texts = ["boat", "position", "note", "what"];
-const others = ["at", "chamber", "recipe", "gauge"];
+const others = ["at", "chamber", "recipe", "gauge", "run"];
 /** What every entry of its kind must have. */
-const kept = new Set(["at", "chamber", "recipe", "count", "gauge", "on"]);
+const kept = new Set(["at", "chamber", "recipe", "count", "gauge", "on", "run"]);
 /** Clocks of two machines differ by so much. */
 const aheadMs = 5 * 60_000;
 
@@ -70,12 +72,14 @@ export async function correctEntry(
   const receipt: Receipt | undefined = written.receipts[0];
   const proposals = [...ws.ledger.proposals.values()].filter((p) => p.restsOnCorrected.includes(how.entry));
   const changes = [...ws.ledger.changes.values()].filter((c) => proposals.some((p) => p.seq === c.proposal));
+  const verdicts = [...ws.ledger.changes.values()].filter((c) => c.closed?.restsOnCorrected.includes(how.entry));
+  const named = [...new Set([...changes, ...verdicts])];
   return {
     entry: receipt?.seq ?? null,
     hash: receipt?.hash ?? null,
     drafts: written.drafts,
     notices: written.notices,
-    rests: [...proposals.map((p) => proposalId(p.seq)), ...changes.map((c) => changeId(c.seq))],
+    rests: [...proposals.map((p) => proposalId(p.seq)), ...named.map((c) => changeId(c.seq))],
   };
 }
 
@@ -119,7 +123,8 @@ function fieldOf(ws: Workspace, name: string, typed: string, chamber: string | u
   if (name === "at") return [name, when(ws, typed)];
   if (name === "chamber") return [name, ws.chamber(typed).name];
   if (name === "recipe") return [name, recipeNamed(ws, typed, chamber)];
-  if (name === "gauge") return [name, gaugeNamed(ws, typed)];
+  if (name === "gauge") return [name, gaugeNamed(ws, typed).name];
+  if (name === "run") return [name, runNamed(ws.ledger, typed).seq];
   return [name, settingTyped(ws, name, typed, chamber === undefined ? undefined : ws.chamber(chamber))];
 }
 
@@ -161,13 +166,6 @@ function recipeNamed(ws: Workspace, name: string, chamber: string | undefined): 
   const near = nearestWord(name, known);
   return refuse("unknown-recipe", `${chamber ?? "the line"} never ran a recipe ${name}`, {
     hint: near ? `did you mean ${near}?` : `known are ${known.join(", ")}`,
-  });
-}
-
-function gaugeNamed(ws: Workspace, name: string): string {
-  if (ws.line.gauges.has(name)) return name;
-  return refuse("unknown-gauge", `no gauge ${name} on this line`, {
-    hint: `gauges are ${[...ws.line.gauges.keys()].join(", ")}`,
   });
 }
 

@@ -2,25 +2,20 @@
  * From the book to what calibration learns from: settings in canonical units, film readings with their gauge's covariance,
  * light readings, cleans and services, in the order they happened.
  */
-import type {
-  ChamberEvent,
-  ChamberLog,
-  FilmReading,
-  LearnOptions,
-  Lever,
-  LightReading,
-  Settings,
-} from "../../calibration/index.ts";
+import type { Bias, ChamberEvent, ChamberLog, LearnOptions, Lever, Settings } from "../../calibration/index.ts";
 import { canonicalUnit } from "../../engine/index.ts";
 import type { FilmOptics } from "../advice/cell-light.ts";
-import { gaugeCovariance, lightSd } from "../advice/expectation.ts";
-import type { Gauge, Line, Setting } from "../line/line.ts";
+import type { Line, Setting } from "../line/line.ts";
 import { goalOf } from "../line/line.ts";
 import { fromQuantity } from "../line/settings.ts";
-import type { Reading, StepSettings } from "../record/entries.ts";
+import type { StepSettings } from "../record/entries.ts";
 import { chamberRecord, type Ledger } from "../record/ledger.ts";
 import { flatSettings } from "../record/steps.ts";
 import type { RunRecord, TimelineEvent } from "../record/timeline.ts";
+import { filmReading, type GaugeBiases, lightReadings } from "./film-readings.ts";
+import { biasThen, gaugeBiases } from "./gauge-readings.ts";
+
+export { filmReading, lightReadings } from "./film-readings.ts";
 
 /** A recipe's settings in canonical units; settings the line no longer declares are left out. */
 export function canonicalSettings(line: Line, steps: readonly StepSettings[]): Settings {
@@ -58,58 +53,22 @@ function canonicalUnits(line: Line): Map<string, { setting: Setting; unit: strin
   return known;
 }
 
-/** The last value read of each film property on a witness, with its gauge's covariance. Null when none was. */
-export function filmReading(line: Line, readings: readonly Reading[]): FilmReading | null {
-  let index: number | null = null;
-  let thicknessNm: number | null = null;
-  let covariance: [number, number, number] = [0, 0, 0];
-  for (const reading of readings) {
-    if (reading.on !== "polished") continue;
-    const gauge = gaugeCovariance(gaugeNamed(line, reading.gauge), reading.sites ?? 1);
-    if (reading.index !== undefined) {
-      index = reading.index;
-      covariance = [gauge[0], reading.thickness_nm === undefined ? 0 : gauge[1], covariance[2]];
-    }
-    if (reading.thickness_nm !== undefined) {
-      thicknessNm = reading.thickness_nm;
-      covariance = [covariance[0], reading.index === undefined ? 0 : gauge[1], gauge[2]];
-    }
-  }
-  return index === null && thicknessNm === null ? null : { index, thicknessNm, gauge: covariance };
-}
-
-export function lightReadings(line: Line, readings: readonly Reading[]): LightReading[] {
-  const out: LightReading[] = [];
-  for (const reading of readings) {
-    // On pyramids only the cell has the light the goal speaks of; a polished wafer is its own witness.
-    if (reading.on !== "cell" && line.wafer.surface === "pyramids") continue;
-    const gauge = gaugeNamed(line, reading.gauge);
-    for (const kind of ["reflectance_minimum_nm", "weighted_reflectance_percent"] as const) {
-      const value = reading[kind];
-      if (value !== undefined) out.push({ kind, value, sd: lightSd(gauge, kind) });
-    }
-  }
-  return out;
-}
-
-const gaugeNamed = (line: Line, name: string): Gauge | null => line.gauges.get(name) ?? null;
-
-function runEvent(line: Line, run: RunRecord): ChamberEvent {
+function runEvent(line: Line, run: RunRecord, biases: GaugeBiases): ChamberEvent {
   return {
     kind: "run",
     entry: run.seq,
     settings: canonicalSettings(line, run.data.steps),
     count: run.data.count,
     sinceClean: run.data.since_clean ?? null,
-    film: filmReading(line, run.readings),
+    film: filmReading(line, run.readings, biasThen(biases, run.atMs)),
     light: lightReadings(line, run.readings),
   };
 }
 
-function eventOf(line: Line, event: TimelineEvent): ChamberEvent | null {
+function eventOf(line: Line, event: TimelineEvent, biases: GaugeBiases): ChamberEvent | null {
   switch (event.kind) {
     case "run":
-      return runEvent(line, event);
+      return runEvent(line, event, biases);
     case "precoat":
       return { kind: "precoat", entry: event.seq, count: event.count };
     case "clean":
@@ -120,12 +79,15 @@ function eventOf(line: Line, event: TimelineEvent): ChamberEvent | null {
   }
 }
 
-/** Every chamber the line declares, with what the book says of it. */
-export function chamberLogs(line: Line, ledger: Ledger): ChamberLog[] {
+/**
+ * Every chamber the line declares, with what the book says of it. Film readings are freed of what their gauge read too high
+ * when the run was made, as far as its reference wafer tells.
+ */
+export function chamberLogs(line: Line, ledger: Ledger, biases: GaugeBiases = gaugeBiases(line, ledger)): ChamberLog[] {
   return [...line.chambers.keys()].map((chamber) => ({
     chamber,
     events: chamberRecord(ledger, chamber)
-      .timeline.map((event) => eventOf(line, event))
+      .timeline.map((event) => eventOf(line, event, biases))
       .filter((event): event is ChamberEvent => event !== null),
   }));
 }
@@ -171,6 +133,7 @@ export function learnOptions(
   line: Line,
   reference: { settings: Settings; recipe: string },
   optics: FilmOptics | null,
+  gauge: Bias | null = null,
 ): LearnOptions {
   const goal = goalOf(line, reference.recipe);
   return {
@@ -180,5 +143,7 @@ export function learnOptions(
     facet: line.wafer.facetFactor,
     minimumOf: optics?.minimumOf ?? null,
     weightedOf: optics?.weightedOf ?? null,
+    ...(gauge && { gauge }),
+    ...(line.priors && { priors: line.priors }),
   };
 }

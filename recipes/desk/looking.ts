@@ -1,7 +1,8 @@
 /** Looking: the line at a glance, one chamber in full, and the live what-if. Plain data for verbs and screens; writes nothing. */
-import { coverageOf, type Settings, suspicions, trackRecord, untold } from "../../calibration/index.ts";
+import { type Settings, trackRecord } from "../../calibration/index.ts";
 import { nitrideIndexRange, Refusal } from "../../engine/index.ts";
 import type { Alarm } from "../advice/alarms.ts";
+import { untoldHere } from "../advice/cannot-tell.ts";
 import { decide } from "../advice/decide.ts";
 import { chancesAlone, type Expectation, expectation } from "../advice/expectation.ts";
 import { asPercent, missWords, runsWord } from "../advice/reasons.ts";
@@ -14,6 +15,7 @@ import { proposalId } from "../record/ids.ts";
 import { chamberRecord, type ProposalRecord, proposalOn } from "../record/ledger.ts";
 import { runsOf, wasMeasured } from "../record/timeline.ts";
 import { recipesOf } from "../record/versions.ts";
+import { alarmsNow } from "./alarming.ts";
 import { chamberModel, inForce, type Proposed, proposalBasis, question } from "./asking.ts";
 import { sheetOf } from "./changing.ts";
 import { canonicalSettings, filmReading, leversOf, lightReadings } from "./learn.ts";
@@ -126,10 +128,11 @@ function chamberRow(ws: Workspace, name: string): ChamberRow {
   }
 }
 
-const alarmCall = (alarm: Alarm): string =>
-  alarm.name === "past_anchor"
-    ? "past the anchor: a person must look before more is corrected"
-    : `${alarm.name.replace("_", " ")}: look for a fault, do not tune`;
+function alarmCall({ name }: Alarm): string {
+  if (name === "past_anchor") return "past the anchor: a person must look before more is corrected";
+  if (name === "all_moved") return "all chambers moved: look at gauge and gas supply first, do not tune";
+  return `${name.replaceAll("_", " ")}: look for a fault, do not tune`;
+}
 
 /** What the next film is expected to be beside its goal: "expected 2.3 nm thin, index 0.011 low". */
 function aheadWords(ahead: Expectation, goal: Goal): string {
@@ -258,7 +261,6 @@ export function chamberView(ws: Workspace, name: string, named?: string): Chambe
   const model = chamberModel(ws, name);
   const before = inForce(ws, name, recipe).settings;
   const now = whatIf(ws, name, before, recipe);
-  const coverage = coverageOf(trackRecord(model));
   const kept = proposalOn(ws.ledger, proposalBasis(ws, name, recipe, null));
   return {
     chamber: name,
@@ -272,11 +274,14 @@ export function chamberView(ws: Workspace, name: string, named?: string): Chambe
     proposal: kept ? keptProposal(ws, name, recipe, kept) : null,
     runs: runsSeen(ws, name, 20, recipe),
     openChange: openChange(ws, name, recipe),
-    learned: learned(ws, model, before, coverage),
-    cannotTell: [...new Set([...now.cannotTell, ...untold(model, leversOf(ws.line)).map((u) => u.sentence)])],
-    alarms: suspicions(model)
-      .filter((s) => s.probability > 0.3)
-      .map((s) => `${s.name}: ${asPercent(s.probability)} since entry ${s.onsetEntry}`),
+    learned: learned(ws, model, before, trackRecord(model)),
+    cannotTell: [
+      ...new Set([
+        ...now.cannotTell,
+        ...untoldHere(model, leversOf(ws.line), { line: ws.line, chamber, before }).map((u) => u.sentence),
+      ]),
+    ],
+    alarms: alarmsNow(ws, model).map((a) => a.sentence),
     plane: plane(ws, goal, now),
   };
 }

@@ -1,32 +1,27 @@
 /** Recording what happened: runs with their readings, the recipe in force, cleans, services, notes. One entry each. */
 
-import type { Dimension } from "../../engine/index.ts";
-import { nearestWord, parseQuantity, refuse } from "../../engine/index.ts";
-import { gaugeFor } from "../advice/expectation.ts";
+import { nearestWord, refuse } from "../../engine/index.ts";
+import { alarmNames } from "../advice/alarm-checks.ts";
 import type { Chamber } from "../line/line.ts";
 import { nameProblem } from "../line/names.ts";
 import { asQuantities, type GivenSettings, parseSet } from "../line/settings.ts";
 import { outside } from "../line/window.ts";
 import { openChange } from "../record/changes.ts";
-import type { AnyDraft, Reading } from "../record/entries.ts";
+import type { AnyDraft } from "../record/entries.ts";
+import { decidedBefore } from "../record/late.ts";
+import { keepSpectrum } from "../record/spectra.ts";
 import { recipeInForce, recipesOf } from "../record/versions.ts";
 import { canonicalSettings } from "./learn.ts";
+import { type Given, type ReadingGiven, readingsOf, wholeNumber } from "./readings-given.ts";
 import { runSentence } from "./run-sentence.ts";
 import type { Workspace } from "./workspace.ts";
 import { type Stamp, type Written, write } from "./writing.ts";
 
-/** A number or a text with a unit, as typed or as given in JSON. */
-export type Given = string | number;
+export type { Given } from "./readings-given.ts";
 
-export interface RunGiven {
+export interface RunGiven extends ReadingGiven {
   chamber: string;
   set?: GivenSettings;
-  index?: Given;
-  thickness?: Given;
-  weightedReflectance?: Given;
-  reflectanceMinimum?: Given;
-  on?: string;
-  gauge?: string;
   recipe?: string;
   step?: string;
   boat?: string;
@@ -35,8 +30,6 @@ export interface RunGiven {
   count?: Given;
   kind?: string;
   note?: string;
-  /** Sites already read from a file: values and their place. */
-  sites?: NonNullable<Reading["site_values"]>;
 }
 
 export interface Recorded extends Written {
@@ -44,62 +37,8 @@ export interface Recorded extends Written {
   hash: string | null;
   sentence: string;
   drafts: AnyDraft[];
-}
-
-const plausible: Record<string, [number, number]> = {
-  index: [1.3, 4],
-  thickness: [0.1, 2000],
-  "weighted reflectance": [0, 100],
-  "reflectance minimum": [200, 2000],
-};
-
-/** A reading's value in canonical unit, refused when not finite or beyond what a film can be. */
-function measured(what: string, given: Given | undefined, dimension: Dimension, unit: string): number | undefined {
-  if (given === undefined || given === "-" || given === "") return undefined;
-  const value =
-    typeof given === "number"
-      ? given
-      : dimension === "number"
-        ? plainNumber(what, given)
-        : parseQuantity(given, dimension, { defaultUnit: unit }).value;
-  const [low, high] = plausible[what];
-  if (!Number.isFinite(value)) refuse("not-a-number", `${what} is ${given}, not a number`);
-  if (value < low || value > high)
-    refuse(
-      "impossible-value",
-      `${what} ${given} is impossible: it must lie in ${low} to ${high}${unit && ` ${unit}`}`,
-      { hint: hintFor(what, value) },
-    );
-  return value;
-}
-
-const hintFor = (what: string, value: number) =>
-  what === "index" && value > 4 ? "is it the thickness? The order is index, then thickness" : undefined;
-
-/** A bare number could be a fraction as well as per cent, so text needs its unit; and no cell reflects under 0.1 %. */
-function weightedGiven(given: Given | undefined): number | undefined {
-  if (typeof given === "string" && given !== "-" && given !== "" && !/%\s*$/.test(given))
-    refuse("missing-unit", `weighted reflectance ${given} has no unit`, {
-      hint: "per cent, as 2.3%; a fraction of 0.023 is 2.3%",
-    });
-  const value = measured("weighted reflectance", given, "percent", "%");
-  if (value !== undefined && value < 0.1)
-    refuse("impossible-value", `weighted reflectance ${value} % is impossible on a coated cell`, {
-      hint: "a fraction instead of per cent?",
-    });
-  return value;
-}
-
-function plainNumber(what: string, text: string): number {
-  return parseQuantity(text.trim(), "number").value ?? refuse("not-a-number", `${what} "${text}" is not a number`);
-}
-
-function wholeNumber(what: string, given: Given | undefined, least: number): number | undefined {
-  if (given === undefined) return undefined;
-  const value = typeof given === "number" ? given : Number(given);
-  if (!Number.isInteger(value) || value < least || value > 1e6)
-    refuse("not-a-count", `${what} is ${given}; a whole number from ${least} on is needed`);
-  return value;
+  /** Proposals and verdicts made before what was recorded here was known, by name. */
+  madeBefore: string[];
 }
 
 /** The settings a run was made with: what was given over what was in force when it happened. */
@@ -130,59 +69,23 @@ export function runSettings(
   return { settings, from };
 }
 
-function readingsOf(ws: Workspace, run: RunGiven): Reading[] {
-  const index = run.sites ? meanOf(run.sites.map((s) => s.index)) : measured("index", run.index, "number", "");
-  const thickness = run.sites
-    ? meanOf(run.sites.map((s) => s.thickness_nm))
-    : measured("thickness", run.thickness, "length", "nm");
-  const weighted = weightedGiven(run.weightedReflectance);
-  const minimum = measured("reflectance minimum", run.reflectanceMinimum, "length", "nm");
-  if (run.on !== undefined && run.on !== "polished" && run.on !== "cell")
-    refuse("bad-on", `--on is polished or cell, not ${run.on}`);
-  if (run.gauge !== undefined && !ws.line.gauges.has(run.gauge))
-    refuse("unknown-gauge", `no gauge ${run.gauge} on this line`, {
-      hint: `gauges are ${[...ws.line.gauges.keys()].join(", ")}`,
-    });
-  const out: Reading[] = [];
-  const gaugeName = (on: "polished" | "cell", what: "film" | "light") =>
-    run.gauge ?? gaugeFor(ws.line, on, what)?.name ?? "unnamed";
-  if (index !== undefined || thickness !== undefined) {
-    const on = run.on ?? "polished";
-    if (on === "cell" && ws.line.wafer.surface === "pyramids" && index !== undefined)
-      refuse(
-        "index-on-texture",
-        "an index read on a textured cell says nothing: reflectance there fixes index times thickness only",
-        { hint: "read it on a polished witness" },
-      );
-    out.push({
-      gauge: gaugeName(on as "polished" | "cell", "film"),
-      on: on as "polished" | "cell",
-      ...(index !== undefined ? { index } : {}),
-      ...(thickness !== undefined ? { thickness_nm: thickness } : {}),
-      ...(run.sites ? { sites: run.sites.length, site_values: run.sites } : {}),
-    });
-  }
-  if (weighted !== undefined || minimum !== undefined) {
-    const on = (run.on ?? (ws.line.wafer.surface === "pyramids" ? "cell" : "polished")) as "polished" | "cell";
-    out.push({
-      gauge: gaugeName(on, "light"),
-      on,
-      ...(weighted !== undefined ? { weighted_reflectance_percent: weighted } : {}),
-      ...(minimum !== undefined ? { reflectance_minimum_nm: minimum } : {}),
-    });
-  }
-  return out;
-}
-
-function meanOf(values: (number | undefined)[]): number | undefined {
-  const read = values.filter((v): v is number => v !== undefined);
-  return read.length === 0 ? undefined : read.reduce((a, b) => a + b, 0) / read.length;
-}
-
-const one = (written: Written & { drafts: AnyDraft[] }, sentence: string): Recorded => {
+/** What was written, with what had been decided before it was known. */
+export function one(ws: Workspace, written: Written & { drafts: AnyDraft[] }, sentence: string): Recorded {
   const receipt = written.receipts.at(-1);
-  return { ...written, entry: receipt?.seq ?? null, hash: receipt?.hash ?? null, sentence };
-};
+  const madeBefore = decidedBefore(
+    ws.ledger,
+    written.receipts.map(({ seq }) => seq),
+  );
+  const few = madeBefore.length > 4 ? [...madeBefore.slice(0, 3), `${madeBefore.length - 3} more`] : madeBefore;
+  const notices =
+    madeBefore.length === 0
+      ? written.notices
+      : [
+          ...written.notices,
+          `Made before this was known, and marked so: ${few.join(", ")}. ${madeBefore.length === 1 ? "It stays" : "They stay"} as written.`,
+        ];
+  return { ...written, notices, entry: receipt?.seq ?? null, hash: receipt?.hash ?? null, sentence, madeBefore };
+}
 
 export async function recordRun(ws: Workspace, run: RunGiven, how: Stamp & { dryRun?: boolean }): Promise<Recorded> {
   const chamber = ws.chamber(run.chamber);
@@ -196,6 +99,7 @@ export async function recordRun(ws: Workspace, run: RunGiven, how: Stamp & { dry
   const count = wholeNumber("--count", run.count, 1) ?? 1;
   const sinceClean = wholeNumber("--since-clean", run.sinceClean, 0);
   const sentence = runSentence(ws, chamber, settings, readings);
+  if (run.spectrum && !how.dryRun) keepSpectrum(ws.folder, ws.ports, run.spectrum);
   const outsideNow = outside(settings, chamber, ws.line).map((f) => f.sentence);
   const written = await write(
     ws,
@@ -222,7 +126,7 @@ export async function recordRun(ws: Workspace, run: RunGiven, how: Stamp & { dry
     how,
   );
   written.notices.push(...outsideNow, ...unentered(ws, chamber.name, recipe, run.set));
-  return one(written, sentence);
+  return one(ws, written, sentence);
 }
 
 /** A change adopted but not entered: whoever typed it in and forgot to say so books runs on the wrong settings. */
@@ -297,6 +201,7 @@ export async function recordRecipe(
     how,
   );
   return one(
+    ws,
     written,
     `${given.recipe} is stated for ${chamber.name}: ${settings.size} settings, from here corrections add up.`,
   );
@@ -325,7 +230,7 @@ export async function recordEvent(
     draft = { kind: "service", ...stamp, data: { chamber, what: event.what } };
     sentence = `${chamber} starts a new hardware epoch: what was known of its offset counts less from here on.`;
   }
-  return one(await write(ws, () => [draft], how), sentence);
+  return one(ws, await write(ws, () => [draft], how), sentence);
 }
 
 /** A note, or with `override` a person's overruling of one named alarm for a number of runs. */
@@ -339,9 +244,9 @@ export async function recordNote(
   let override: { alarm: string; runs: number; chamber: string } | undefined;
   if (note.override) {
     if (!chamber) refuse("no-chamber", "an override names a chamber", { hint: "--chamber NAME" });
-    const alarms = ["index_low", "index_high", "past_anchor"];
-    if (!alarms.includes(note.override.alarm))
-      refuse("unknown-alarm", `no alarm ${note.override.alarm}`, { hint: `alarms are ${alarms.join(", ")}` });
+    const { alarm } = note.override;
+    if (!alarmNames.some((name) => name === alarm))
+      refuse("unknown-alarm", `no alarm ${alarm}`, { hint: `alarms are ${alarmNames.join(", ")}` });
     const allowed = ws.line.people.override;
     const person = how.by ?? ws.ports.person;
     if (allowed.length > 0 && !allowed.includes(person))
@@ -358,6 +263,7 @@ export async function recordNote(
   };
   const written = await write(ws, () => [draft], how);
   return one(
+    ws,
     written,
     override
       ? `${override.alarm} is overruled on ${override.chamber} for ${override.runs} runs, or until the next clean.`

@@ -1,5 +1,5 @@
 /** The one sentence after a run is recorded: "84.1 nm, 1.2 below expected, within noise". */
-import { indexBounds, type Settings, thicknessBounds } from "../../calibration/index.ts";
+import { indexBounds, noBias, type Settings, thicknessBounds } from "../../calibration/index.ts";
 import { Refusal } from "../../engine/index.ts";
 import { gaugeCovariance, gaugeFor } from "../advice/expectation.ts";
 import type { Chamber } from "../line/line.ts";
@@ -40,7 +40,8 @@ function expectedOf(ws: Workspace, chamber: Chamber, settings: Settings, film: R
   if (one.ownReadings === 0 && one.context.sisters.length === 0) return null;
   try {
     const gauge = ws.line.gauges.get(film.gauge) ?? gaugeFor(ws.line, "polished", "film");
-    const law = one.measuredLaw(settings, gaugeCovariance(gauge, film.sites ?? 1));
+    const bias = ws.gaugeBiases.get(film.gauge)?.at(ws.ports.now() / 86_400_000);
+    const law = one.measuredLaw(settings, gaugeCovariance(gauge, film.sites ?? 1), bias ?? noBias);
     return { index: indexBounds(law), thickness: thicknessBounds(law) };
   } catch (error) {
     if (error instanceof Refusal) return null; // settings the model cannot use: the run itself is still worth keeping

@@ -2,16 +2,20 @@
  * A line folder at work: its line file, book, ledger and calibrated model, read when first needed and kept until the files
  * change. Everything the verbs and screens do goes through here; it decides nothing itself.
  */
-import { LineModel } from "../../calibration/index.ts";
+import { type FilmReading, LineModel } from "../../calibration/index.ts";
 import { type CoatedWafer, Refusal, refuse } from "../../engine/index.ts";
 import { type CellLight, cellLight, filmOptics } from "../advice/cell-light.ts";
+import { gaugeFor } from "../advice/expectation.ts";
 import { type Chamber, type Goal, goalOf, type Line } from "../line/line.ts";
 import { lineWafer } from "../line/line-wafer.ts";
 import { readLine } from "../line/read-line.ts";
 import type { Ports } from "../ports.ts";
 import { Book } from "../record/book.ts";
 import { catchUp, emptyLedger, type Ledger } from "../record/ledger.ts";
+import type { RunRecord } from "../record/timeline.ts";
 import { recipesOf } from "../record/versions.ts";
+import { filmReading, type GaugeBiases } from "./film-readings.ts";
+import { biasThen, gaugeBiases, latestMs } from "./gauge-readings.ts";
 import { chamberLogs, learnOptions, referenceRecipe } from "./learn.ts";
 
 export const LINE_FILE = "line.yaml";
@@ -26,6 +30,7 @@ export class Workspace {
   private bookOpened: Book | null = null;
   private ledgerBuilt: { ledger: Ledger; generation: number } | null = null;
   private modelBuilt: { key: string; model: LineModel | null } | null = null;
+  private biasesBuilt: { key: string; biases: GaugeBiases } | null = null;
   private lightBuilt: { key: string; light: CellLight } | null = null;
   private waferBuilt: { key: string; wafer: CoatedWafer } | null = null;
 
@@ -114,11 +119,32 @@ export class Workspace {
     return this.modelBuilt.model;
   }
 
+  /** What each gauge reads too high, as its reference wafer shows it. */
+  get gaugeBiases(): GaugeBiases {
+    const key = `${this.line.hash} ${this.ledger.basis}`;
+    if (this.biasesBuilt?.key !== key) this.biasesBuilt = { key, biases: gaugeBiases(this.line, this.ledger) };
+    return this.biasesBuilt.biases;
+  }
+
+  /** The film of a run, all its readings together, freed of what its gauges read too high then. */
+  filmOf(run: RunRecord): FilmReading | null {
+    return filmReading(this.line, run.readings, biasThen(this.gaugeBiases, run.atMs));
+  }
+
   /** Learns from a ledger: this one, or one as it was at an earlier time. */
   learn(ledger: Ledger): LineModel | null {
     const reference = referenceRecipe(this.line, ledger);
     if (!reference) return null;
-    return new LineModel(chamberLogs(this.line, ledger), learnOptions(this.line, reference, filmOptics(this.wafer)));
+    const { line } = this;
+    const biases = gaugeBiases(line, ledger);
+    // What is foreseen of a reading is what the film gauge will show, its own bias included; as of the last thing that
+    // happened, so that the same book always gives the same answer.
+    const then = biasThen(biases, latestMs(ledger));
+    const bias = then?.biases.get(gaugeFor(line, "polished", "film")?.name ?? "")?.at(then.day) ?? null;
+    return new LineModel(
+      chamberLogs(line, ledger, biases),
+      learnOptions(line, reference, filmOptics(this.wafer), bias),
+    );
   }
 
   /** The light of the coated cell, with the facet factor as the book has pinned it. */

@@ -99,6 +99,30 @@ const repeatability = (dimension: Dimension, zeroAllowed = false) =>
     return value;
   });
 
+/**
+ * A certified value, "2.045" or "2.045 within 0.002". A certificate's tolerance is taken as its expanded uncertainty, two
+ * standard deviations (common practice, no source).
+ */
+const certified = (dimension: Dimension, low: number, high: number, unit: string) =>
+  read((text) => {
+    if (!/\bwithin\b|\u00b1|\+\/-/.test(text))
+      return { value: within(parseQuantity(text, dimension).value, low, high, unit), sd: 0 };
+    const { value, within: halfWidth } = parseTolerance(text, dimension);
+    within(value, low, high, unit);
+    within(halfWidth, 0, value, unit, "a tolerance cannot be wider than the value itself");
+    return { value, sd: halfWidth / 2 };
+  });
+
+const correlation = read((text) =>
+  within(
+    parseQuantity(text, "number").value,
+    -0.999,
+    0.999,
+    "",
+    "the correlation of its errors in index and thickness: -0.98 for a fitted spectrum, 0 when left out",
+  ),
+);
+
 export const gaugeShape = z.strictObject({
   on: z.enum(["polished", "cell"]),
   index: z.optional(repeatability("number")),
@@ -109,6 +133,14 @@ export const gaugeShape = z.strictObject({
     z.strictObject({
       index: z.optional(repeatability("number", true)),
       thickness: z.optional(repeatability("length", true)),
+    }),
+  ),
+  correlation: z.optional(correlation),
+  reference: z.optional(
+    z.strictObject({
+      // any wafer will do, so the index of an oxide (1.46) or of silicon (3.87) too
+      index: z.optional(certified("number", 1.3, 4, "")),
+      thickness: z.optional(certified("length", 1, 2000, "nm")),
     }),
   ),
 });

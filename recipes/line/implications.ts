@@ -5,6 +5,7 @@
 import { formatQuantity } from "../../engine/index.ts";
 import { reach } from "./expression.ts";
 import type { Line } from "./line.ts";
+import { priorSentences } from "./priors.ts";
 import type { Declared } from "./read-settings.ts";
 
 /**
@@ -29,6 +30,7 @@ export function impliedBy(line: Line, declared: readonly Declared[], light?: Coa
     ...gaugesAgainstGoals(line),
     ...idleLimits(line),
     ...tuning(line),
+    ...priorSentences(line.priors),
   ];
 }
 

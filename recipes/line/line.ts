@@ -4,6 +4,7 @@
  *
  * Canonical units: sccm, s, W, Pa, degC, mm/s, nm, deg, percent (0 to 100), plain number.
  */
+import type { PriorOverrides } from "../../calibration/index.ts";
 import type { Dimension } from "../../engine/index.ts";
 
 export interface Tolerance {
@@ -47,6 +48,10 @@ export interface Gauge {
   weightedReflectancePercent?: number;
   reflectanceMinimumNm?: number;
   dayToDay: { index: number; thicknessNm: number };
+  /** Correlation of its errors in index and thickness, of one reading and from day to day alike; 0 when absent. */
+  correlation?: number;
+  /** Certified values of its reference wafer, with the standard deviation of the certificate (0: taken as exact). */
+  reference?: { index?: { value: number; sd: number }; thicknessNm?: { value: number; sd: number } };
 }
 
 export interface Setting {
@@ -110,6 +115,8 @@ export interface Line {
   recipes: ReadonlyMap<string, { goal: Goal }>;
   people: { approve: readonly string[]; override: readonly string[] };
   chambers: ReadonlyMap<string, Chamber>;
+  /** What the line states in place of calibration's standard priors; absent when it states nothing. */
+  priors?: PriorOverrides;
   /** SHA-256 of the file's bytes, hex. */
   hash: string;
   /** What the declared numbers imply, for `check`. Sentences. */

@@ -3,12 +3,14 @@
  * no file itself: an efficiency table named by `weight:` comes through a passed-in reader.
  */
 import { createHash } from "node:crypto";
+import type * as z from "zod/mini";
 import { type Problem, Refusal } from "../../engine/index.ts";
 import { readWeight } from "./efficiency.ts";
 import { gaugeShape, goalShape, lightShape, oneRow, peopleShape, timeZone, waferShape } from "./goal-shape.ts";
 import { type CoatedLight, impliedBy } from "./implications.ts";
 import type { Gauge, Goal, Light, Line, Wafer } from "./line.ts";
 import type { FileReader } from "./number-table.ts";
+import { readPriors } from "./priors.ts";
 import { readChambers, readSettings } from "./read-settings.ts";
 import { readAnchor, readWindow } from "./read-window.ts";
 import { Reader } from "./shape.ts";
@@ -30,6 +32,7 @@ const KEYS = [
   "recipes",
   "people",
   "chambers",
+  "priors",
 ];
 
 export interface LineDoors {
@@ -67,6 +70,7 @@ export function readLine(source: Uint8Array | string, file: string, doors: LineD
   for (const [key, recipe] of recipes) if (light) minimumInLight(reader, recipe.goal, light, ["recipes", key, "goal"]);
   const people = readPeople(reader);
   const chambers = readChambers(reader, declared, failed);
+  const priors = readPriors(reader);
   if (reader.problems.length > 0) throw new Refusal(inFileOrder(reader.problems));
   if (name === undefined || zone === undefined || !wafer || !goal || !light || !people) {
     throw new Error("a part of the line file was not read, and no reason was given");
@@ -85,6 +89,7 @@ export function readLine(source: Uint8Array | string, file: string, doors: LineD
     recipes,
     people,
     chambers,
+    ...(priors && { priors }),
   };
   const complete: Line = { ...line, hash, implications: [] };
   return { ...complete, implications: impliedBy(complete, [...declared.values()], doors.light) };
@@ -171,6 +176,7 @@ function readGauges(reader: Reader): Map<string, Gauge> {
     const shape = reader.shaped(gaugeShape, path);
     if (!shape) continue;
     const { index, thickness, weighted_reflectance, reflectance_minimum, day_to_day: daily } = shape;
+    gaugeReference(reader, path, shape);
     if (index === undefined && thickness === undefined && !weighted_reflectance && !reflectance_minimum) {
       const hint = "give the repeatability of index, thickness, weighted_reflectance or reflectance_minimum";
       reader.add(path, "gauge-reads-nothing", `the gauge ${name} reads nothing`, hint, "key");
@@ -184,9 +190,35 @@ function readGauges(reader: Reader): Map<string, Gauge> {
       ...(weighted_reflectance !== undefined && { weightedReflectancePercent: weighted_reflectance }),
       ...(reflectance_minimum !== undefined && { reflectanceMinimumNm: reflectance_minimum }),
       dayToDay: { index: daily?.index ?? 0, thicknessNm: daily?.thickness ?? 0 },
+      ...(shape.correlation !== undefined && { correlation: shape.correlation }),
+      ...(shape.reference && {
+        reference: {
+          ...(shape.reference.index && { index: shape.reference.index }),
+          ...(shape.reference.thickness && { thicknessNm: shape.reference.thickness }),
+        },
+      }),
     });
   }
   return gauges;
+}
+
+/** A reference wafer and a correlation are of film, and so of a gauge that reads film. */
+function gaugeReference(reader: Reader, path: readonly string[], shape: z.output<typeof gaugeShape>): void {
+  const { reference, correlation } = shape;
+  for (const key of ["index", "thickness"] as const) {
+    if (reference?.[key] === undefined || shape[key] !== undefined) continue;
+    const hint = `give its repeatability too, as ${key}, or leave it out of the reference`;
+    reader.add([...path, "reference", key], "gauge-reads-nothing", `${path.at(-1)} does not read ${key}`, hint, "key");
+  }
+  if (reference && !reference.index && !reference.thickness) {
+    const hint =
+      "as in reference: { index: 2.045, thickness: 85.0 nm }; without it the first readings are the reference";
+    reader.add([...path, "reference"], "empty-reference", "the reference wafer has no value", hint, "key");
+  }
+  if (correlation !== undefined && (shape.index === undefined || shape.thickness === undefined)) {
+    const hint = "it is that of errors in index and thickness, and the gauge does not read both";
+    reader.add([...path, "correlation"], "nothing-to-correlate", "correlation has no meaning here", hint, "key");
+  }
 }
 
 function readRecipes(reader: Reader): Map<string, { goal: Goal }> {

@@ -44,6 +44,7 @@ gauges:                          # repeatability of one reading: the standard de
   ellipsometer: { on: polished, index: 0.003, thickness: 0.4 nm }
   # reflectometer: { on: cell, reflectance_minimum: 1.5 nm, weighted_reflectance: 0.1 % }
   # what all readings of a day share:   day_to_day: { index: 0.004, thickness: 0.5 nm }
+  # certified values of the wafer that "record gauge" reads:   reference: { index: 2.045 within 0.002, thickness: 85 nm }
 
 settings:                        # range: qualified; smallest: the step that can be typed in; tune: may be proposed
   silane: { range: 500..1000 sccm, smallest: 1 sccm, tune: true }       # full_scale: 2000 sccm keeps off the lowest 2 %
@@ -65,6 +66,7 @@ anchor:                          # how far corrections may add up from the last 
 
 # recipes: { dark: { goal: { thickness: 80 nm within 2 nm } } }    # a recipe's own goal, where it differs
 # people: { approve: [ ], override: [ ] }                          # a name under approve: changes wait for that person
+# priors: { index: { ratio: -0.20 sd 0.05 }, scatter: { process: { index: 0.004, thickness: 0.6 % } } }   # known here better
 
 chambers:
   A1: {}                         # a chamber may narrow a setting, never widen it

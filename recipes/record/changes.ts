@@ -15,6 +15,7 @@
 import type { Problem } from "../../engine/index.ts";
 import type { Entry, StepSettings } from "./entries.ts";
 import { changeId } from "./ids.ts";
+import { type Marks, unmarked } from "./late.ts";
 import type { Ledger } from "./ledger.ts";
 
 export type ChangeState = "adopted" | "entered" | "closed" | "superseded" | "undone" | "cancelled";
@@ -45,7 +46,8 @@ export interface Change extends Mark {
   approved: Mark[];
   entered: (Mark & { readBack: StepSettings[] }) | null;
   closed:
-    | (Mark & { verdict: string; expected: Record<string, unknown>; got: Record<string, unknown>; runs: number[] })
+    | (Mark &
+        Marks & { verdict: string; expected: Record<string, unknown>; got: Record<string, unknown>; runs: number[] })
     | null;
   supersededBy: number | null;
   /** The change opened to undo this one. */
@@ -128,7 +130,7 @@ export function applyToChanges(ledger: Ledger, entry: ChangeEntry): Problem | nu
     case "close": {
       const { verdict, expected, got, runs } = entry.data;
       change.state = "closed";
-      change.closed = { ...mark, verdict, expected, got, runs };
+      change.closed = { ...mark, verdict, expected, got, runs, ...unmarked() };
       return null;
     }
     case "undo":

@@ -1,6 +1,7 @@
 /**
  * What a `correct` entry does to the entry it corrects: fields are replaced by name, and the result must again be a valid
- * entry of its kind. Runs, readings, cleans, precoats and services can be corrected.
+ * entry of its kind. Runs, readings, cleans, precoats, services and
+ * readings of a reference wafer can be corrected.
  *
  * Fields of a run: `at`, any of its own (chamber, recipe, step, count, since_clean, kind, boat, position, note), a
  * reading's (index, thickness_nm, ... of the reading entered with the run that has it, else of the one that reads such
@@ -28,9 +29,16 @@ const OWN_FIELDS = {
   clean: new Set(["chamber", "what"]),
   precoat: new Set(["chamber", "count"]),
   service: new Set(["chamber", "what"]),
+  gauge: new Set(["gauge", "index", "thickness_nm"]),
 } as const;
 
-type Correctable = Entry<"run"> | Entry<"reading"> | Entry<"clean"> | Entry<"precoat"> | Entry<"service">;
+type Correctable =
+  | Entry<"run">
+  | Entry<"reading">
+  | Entry<"clean">
+  | Entry<"precoat">
+  | Entry<"service">
+  | Entry<"gauge">;
 
 export type Corrected = { original: Correctable; data: Correctable["data"]; at: string } | { problem: Problem };
 
@@ -60,6 +68,10 @@ export function corrected(
     }
     // a reading of which everything was taken away is no reading
     if ("readings" in data) data = { ...data, readings: data.readings.filter(readsSomething) };
+    if (original.kind === "gauge" && !("index" in data || "thickness_nm" in data))
+      return fault("bad-entry", `entry ${number} would read nothing with this correction`);
+    if ("reading" in data && !readsSomething(data.reading))
+      return fault("bad-entry", `entry ${number} would read nothing with this correction`);
     const complaint = checkData(original.kind, data);
     if (complaint) return fault("bad-entry", `entry ${number} would not be valid with this correction: ${complaint}`);
     return { original, data, at };
@@ -76,6 +88,7 @@ function correctable(entry: AnyEntry): Correctable {
     case "clean":
     case "precoat":
     case "service":
+    case "gauge":
       return entry;
     default:
       return fault(
@@ -130,7 +143,7 @@ const readsSomething = (reading: Reading): boolean =>
 
 /** Which of a run's readings a field belongs to: film and light are read by different gauges. */
 function readingWith(readings: readonly Reading[], name: string): number {
-  const later = "a reading that comes after its run cannot be entered yet";
+  const later = "a reading that came later is entered with coatwright record reading --run ENTRY";
   if (readings.length === 0) return fault("no-such-field", "the run has no reading of its own", later);
   const places = (is: (reading: Reading) => boolean): number[] => readings.flatMap((one, i) => (is(one) ? [i] : []));
   const having = places((one) => name in one);

@@ -4,15 +4,18 @@
  * program only replays what is new.
  *
  * Orders: the book's sequence orders the chain; (when it happened, sequence) orders a chamber's life, so an entry made
- * late takes its place. A corrected entry is replaced in place, and what was decided on the old value is marked.
+ * late takes its place. A corrected entry is replaced in place. What was decided on the old value, or before a late entry
+ * was there, stays as it was and is marked (`late.ts`).
  */
 import type { Problem } from "../../engine/index.ts";
 import { sha256 } from "./canonical.ts";
 import { applyToChanges, type Change } from "./changes.ts";
-import { corrected } from "./corrections.ts";
-import type { AnyEntry, Entry, EntryData, Reading } from "./entries.ts";
+import type { AnyEntry, EntryData } from "./entries.ts";
 import { NO_HASH } from "./format.ts";
+import { type Marks, markDecided, unmarked } from "./late.ts";
 import { addOverride, type Override } from "./overrides.ts";
+import { addReading, chamberFor, gaugeReading, newRun, placeRun, plainEvent } from "./placing.ts";
+import { replayCorrection } from "./replay-correction.ts";
 import { insertByTime, type RunRecord, type TimelineEvent } from "./timeline.ts";
 import type { RecipeVersion } from "./versions.ts";
 
@@ -24,7 +27,7 @@ export interface ChamberRecord {
   readonly versions: Map<string, RecipeVersion[]>;
 }
 
-export interface ProposalRecord {
+export interface ProposalRecord extends Marks {
   seq: number;
   /** "p-000042" is `proposalId(seq)`. */
   at: string;
@@ -33,8 +36,6 @@ export interface ProposalRecord {
   data: EntryData["proposal"];
   /** The change that adopted it last, if any. */
   adoptedBy: number | null;
-  /** Entries corrected since, that this proposal had been made on. */
-  restsOnCorrected: number[];
 }
 
 export interface GaugeReading {
@@ -67,6 +68,8 @@ export interface Ledger {
   readonly overrides: Override[];
   /** Entries by the corrections made to them, in order. */
   readonly corrections: Map<number, number[]>;
+  /** When the latest proposal or verdict was made, ms: what happened after it can have been missed by none of them. */
+  lastDecidedMs: number;
   /** Running hash over what proposals rest on. */
   basis: string;
   /** Entries that do not fit what came before: kept in the book, without effect here. */
@@ -88,6 +91,7 @@ export function emptyLedger(): Ledger {
     gaugeReadings: [],
     overrides: [],
     corrections: new Map(),
+    lastDecidedMs: Number.NEGATIVE_INFINITY,
     basis: NO_HASH,
     problems: [],
   };
@@ -109,12 +113,6 @@ export function catchUp(ledger: Ledger, entries: readonly AnyEntry[]): Ledger {
 /** A chamber's record; an empty one when the book says nothing of it. */
 export function chamberRecord(ledger: Ledger, chamber: string): ChamberRecord {
   return ledger.chambers.get(chamber) ?? { chamber, timeline: [], versions: new Map() };
-}
-
-function chamberFor(ledger: Ledger, chamber: string): ChamberRecord {
-  const record = chamberRecord(ledger, chamber);
-  ledger.chambers.set(chamber, record);
-  return record;
 }
 
 /** Entries a proposal rests on: what was done and seen in any chamber, since sisters lend each other what they know. */
@@ -175,6 +173,7 @@ function apply(ledger: Ledger, entry: AnyEntry): Problem | null {
       return null;
     case "run":
       placeRun(ledger, newRun(entry, entry.data, at));
+      markDecided(ledger, seq, entry.data.chamber, atMs);
       return null;
     case "reading":
       return addReading(ledger, entry, entry.data);
@@ -191,29 +190,32 @@ function apply(ledger: Ledger, entry: AnyEntry): Problem | null {
         reason: reason ?? null,
         change: null,
       });
+      markDecided(ledger, seq, chamber, atMs);
       return null;
     }
     case "clean":
     case "precoat":
     case "service":
       insertByTime(chamberFor(ledger, entry.data.chamber).timeline, plainEvent(entry, entry.data, at));
+      markDecided(ledger, seq, entry.data.chamber, atMs);
       return null;
-    case "gauge": {
-      const { gauge, index, thickness_nm } = entry.data;
-      const reading = { seq, at, atMs, by, gauge, index: index ?? null, thicknessNm: thickness_nm ?? null };
-      insertByTime(ledger.gaugeReadings, reading);
+    case "gauge":
+      insertByTime(ledger.gaugeReadings, gaugeReading(entry, entry.data, at));
+      markDecided(ledger, seq, null, atMs);
       return null;
-    }
     case "note":
       if (entry.data.override) addOverride(ledger, entry, entry.data.override);
       return null;
     case "proposal":
-      ledger.proposals.set(seq, { seq, at, atMs, by, data: entry.data, adoptedBy: null, restsOnCorrected: [] });
+      ledger.proposals.set(seq, { seq, at, atMs, by, data: entry.data, adoptedBy: null, ...unmarked() });
+      ledger.lastDecidedMs = Math.max(ledger.lastDecidedMs, atMs);
       return null;
     case "adopt":
     case "approve":
-    case "close":
     case "undo":
+      return applyToChanges(ledger, entry);
+    case "close":
+      ledger.lastDecidedMs = Math.max(ledger.lastDecidedMs, atMs);
       return applyToChanges(ledger, entry);
     case "enter": {
       const fault = applyToChanges(ledger, entry);
@@ -226,7 +228,7 @@ function apply(ledger: Ledger, entry: AnyEntry): Problem | null {
       return null;
     }
     case "correct":
-      return correct(ledger, entry);
+      return replayCorrection(ledger, entry);
     case "torn":
     case "import":
       return null;
@@ -239,99 +241,4 @@ function addVersion(ledger: Ledger, chamber: string, version: RecipeVersion): vo
   insertByTime(list, version);
   record.versions.set(version.recipe, list);
   insertByTime(record.timeline, { kind: "version", ...version });
-}
-
-function newRun(entry: Entry<"run">, data: EntryData["run"], at: string): RunRecord {
-  return {
-    kind: "run",
-    seq: entry.seq,
-    at,
-    atMs: Date.parse(at),
-    by: entry.by,
-    chamber: data.chamber,
-    recipe: data.recipe,
-    data,
-    readings: [...data.readings],
-    later: [],
-    correctedBy: [],
-  };
-}
-
-function placeRun(ledger: Ledger, run: RunRecord): void {
-  ledger.runs.set(run.seq, run);
-  insertByTime(chamberFor(ledger, run.chamber).timeline, run);
-}
-
-type PlainEntry = Entry<"clean"> | Entry<"precoat"> | Entry<"service">;
-
-function plainEvent(entry: PlainEntry, data: PlainEntry["data"], at: string): TimelineEvent {
-  const common = { seq: entry.seq, at, atMs: Date.parse(at), by: entry.by };
-  if (entry.kind === "precoat") return { kind: "precoat", ...common, count: (data as EntryData["precoat"]).count };
-  const { what } = data as EntryData["clean"];
-  return entry.kind === "clean"
-    ? { kind: "clean", ...common, what: what ?? null }
-    : { kind: "service", ...common, what: what ?? "" };
-}
-
-function addReading(ledger: Ledger, entry: Entry<"reading">, data: { run: number; reading: Reading }): Problem | null {
-  const run = ledger.runs.get(data.run);
-  if (!run) {
-    return { code: "no-such-run", message: `entry ${entry.seq} is a reading of run ${data.run}, which does not exist` };
-  }
-  run.later.push({ seq: entry.seq, at: entry.at, atMs: Date.parse(entry.at), by: entry.by, reading: data.reading });
-  run.later.sort((a, b) => a.seq - b.seq);
-  run.readings = [...run.data.readings, ...run.later.map((one) => one.reading)];
-  ledger.laterReadings.set(entry.seq, data.run);
-  return null;
-}
-
-function dropReading(ledger: Ledger, seq: number): void {
-  const run = ledger.runs.get(ledger.laterReadings.get(seq) ?? -1);
-  if (!run) return;
-  run.later = run.later.filter((one) => one.seq !== seq);
-  run.readings = [...run.data.readings, ...run.later.map((one) => one.reading)];
-}
-
-/** The corrected entry takes the place of the wrong one; every correction made to it so far counts, in order. */
-function correct(ledger: Ledger, entry: Entry<"correct">): Problem | null {
-  const target = ledger.entries[entry.data.entry];
-  const made = [...(ledger.corrections.get(entry.data.entry) ?? []), entry.seq];
-  const fields = made.map((seq) => (ledger.entries[seq] as Entry<"correct">).data.fields);
-  const result = corrected(target, entry.data.entry, fields);
-  if ("problem" in result) return result.problem;
-  const original = result.original;
-  if (original.kind === "reading" && !ledger.runs.has((result.data as EntryData["reading"]).run)) {
-    return { code: "no-such-run", message: `the correction in entry ${entry.seq} names a run that does not exist` };
-  }
-  ledger.corrections.set(original.seq, made);
-  const touched = new Set<string>();
-  if (original.kind === "reading") {
-    touched.add(ledger.runs.get(ledger.laterReadings.get(original.seq) ?? -1)?.chamber ?? "");
-    dropReading(ledger, original.seq);
-    addReading(ledger, { ...original, at: result.at }, result.data as EntryData["reading"]);
-    touched.add(ledger.runs.get((result.data as EntryData["reading"]).run)?.chamber ?? "");
-  } else {
-    for (const record of ledger.chambers.values()) {
-      const index = record.timeline.findIndex((event) => event.seq === original.seq);
-      if (index < 0) continue;
-      record.timeline.splice(index, 1);
-      touched.add(record.chamber);
-    }
-    touched.add((result.data as { chamber: string }).chamber);
-    if (original.kind === "run") {
-      const run = newRun(original, result.data as EntryData["run"], result.at);
-      const { later } = ledger.runs.get(original.seq) ?? run;
-      run.later = later;
-      run.readings = [...run.data.readings, ...later.map((one) => one.reading)];
-      run.correctedBy = made;
-      placeRun(ledger, run);
-    } else {
-      const data = result.data as PlainEntry["data"];
-      insertByTime(chamberFor(ledger, data.chamber).timeline, plainEvent(original, data, result.at));
-    }
-  }
-  for (const proposal of ledger.proposals.values()) {
-    if (proposal.seq > original.seq && touched.has(proposal.data.chamber)) proposal.restsOnCorrected.push(original.seq);
-  }
-  return null;
 }

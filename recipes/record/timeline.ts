@@ -51,7 +51,13 @@ export function runsOf(timeline: readonly TimelineEvent[]): RunRecord[] {
   return timeline.filter((event) => event.kind === "run");
 }
 
-/** Was anything measured of this run? */
+/** Was anything measured of this run? A spectrum kept without a value read from it tells nothing yet. */
 export function wasMeasured(run: RunRecord): boolean {
-  return run.readings.length > 0;
+  return run.readings.some(
+    (reading) =>
+      reading.index !== undefined ||
+      reading.thickness_nm !== undefined ||
+      reading.reflectance_minimum_nm !== undefined ||
+      reading.weighted_reflectance_percent !== undefined,
+  );
 }

@@ -54,6 +54,8 @@ function changeSection(ws: Workspace, change: Change): string[] {
       out.push(`### Why (${proposalId(proposal.seq)})`, because.map((b) => `* ${plain(String(b))}`).join("\n"));
     if (proposal.restsOnCorrected.length > 0)
       out.push(`**Rests on a reading corrected since:** entries ${proposal.restsOnCorrected.join(", ")}.`);
+    if (proposal.restsOnLate.length > 0)
+      out.push(`**Proposed before it was known:** entries ${proposal.restsOnLate.join(", ")}, which came later.`);
   }
   out.push("### Expected beside got", expectedTable(change));
   const runs = runsSince(ws.ledger, change);
@@ -81,6 +83,11 @@ function changeSection(ws: Workspace, change: Change): string[] {
     if (rows.length > 30) out.push(`and ${rows.length - 30} more.`);
   }
   out.push(`**Verdict:** ${plain(change.closed?.verdict ?? "open")}`);
+  const { restsOnCorrected = [], restsOnLate = [] } = change.closed ?? {};
+  if (restsOnCorrected.length > 0)
+    out.push(`**The verdict rests on what was corrected since:** entries ${restsOnCorrected.join(", ")}.`);
+  if (restsOnLate.length > 0)
+    out.push(`**The verdict was given before it was known:** entries ${restsOnLate.join(", ")}, which came later.`);
   return out;
 }
 

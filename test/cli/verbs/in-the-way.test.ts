@@ -117,7 +117,7 @@ describe.skipIf(!existsSync("/dev/full"))("a full disk behind stdout", () => {
 
 describe("words", () => {
   it.each([
-    [["record", "--line", "line"], /^record what\?\n.*run, recipe, clean/],
+    [["record", "--line", "line"], /^record what\?\n.*run, reading, recipe, clean/],
     [["run", "A2", "2,043", "84", "--line", "line"], /write 2\.043 with a decimal point, or 2043/],
     [["import", "", "--line", "line"], /no file is named/],
     [["import", ".", "--line", "line"], /is a folder/],

@@ -38,10 +38,12 @@ const refusalOf = async (done: Promise<unknown>): Promise<Refusal> => {
 const writing = [
   ["run", "A2", "2.05", "85"],
   ["record", "run", "--chamber", "A2"],
+  ["record", "reading", "--run", "12", "--index", "2.05"],
   ["record", "recipe", "--chamber", "A2", "--recipe", "blue", "--set", "time=560s"],
   ["record", "clean", "--chamber", "A2"],
   ["record", "precoat", "--chamber", "A2", "--count", "2"],
   ["record", "service", "--chamber", "A2", "--what", "valve"],
+  ["record", "gauge", "--gauge", "ellipsometer", "--reference", "--index", "2.05"],
   ["record", "note", "--text", "x"],
   ["correct", "10", "index=2.05", "--reason", "x"],
   ["import", "r.csv"],
