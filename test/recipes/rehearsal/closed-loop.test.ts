@@ -140,7 +140,11 @@ describe("the score of a loop", () => {
         ...oracle,
         begin(brief, truth) {
           const hand = oracle.begin(brief, truth);
-          return { ...hand, next: () => (good.push(hand.next()), good[good.length - 1]) };
+          const next = () => {
+            good.push(hand.next());
+            return good[good.length - 1];
+          };
+          return { ...hand, next };
         },
       };
       const near = playLoop(one, noting, { ...base, production: 0 });
@@ -196,14 +200,14 @@ describe("the score of a loop", () => {
 });
 
 describe("on linear worlds", () => {
-  const stages = worlds(base, 40);
+  const stages = worlds(base, 25);
 
   it("the oracle is above every practice, and a controller above the rule of thumb", () => {
     const best = later(played(oracle, base, stages));
     for (const practice of usualPractices) expect(later(played(practice, base, stages))).toBeLessThan(best);
     const [rule] = usualPractices;
     const tuned = usualPractices[usualPractices.length - 1];
-    // Some 0.83 and 0.97, each known to 0.015 on 40 worlds.
+    // Some 0.83 and 0.97, each known to 0.02 on 25 worlds.
     expect(later(played(tuned, base, stages)) - later(played(rule, base, stages))).toBeGreaterThan(0.06);
   });
 
@@ -211,6 +215,6 @@ describe("on linear worlds", () => {
     const factorial = usualPractices.find((p) => p.name === "factorial") as Practice;
     const runs = played(factorial, base, stages).map((p) => p.runs ?? 0);
     expect(Math.min(...runs)).toBeGreaterThanOrEqual(7);
-    expect([...runs].sort((a, b) => a - b)[20]).toBe(8);
+    expect([...runs].sort((a, b) => a - b)[12]).toBe(8);
   });
 });

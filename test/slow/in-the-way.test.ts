@@ -3,7 +3,7 @@ import { spawnSync } from "node:child_process";
 import { appendFileSync, cpSync, existsSync, mkdirSync, readFileSync, rmSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
-import { type Ended, type Program, program } from "../../support/program.ts";
+import { type Ended, type Program, program } from "../support/program.ts";
 
 let cw: Program;
 const at = (...parts: string[]) => join(cw.folder, ...parts);

@@ -3,7 +3,7 @@ import { spawnSync } from "node:child_process";
 import { readFileSync, writeFileSync } from "node:fs";
 import { join } from "node:path";
 import { afterAll, beforeAll, describe, expect, it } from "vitest";
-import { type Program, program } from "../../support/program.ts";
+import { type Program, program } from "../support/program.ts";
 
 let cw: Program;
 let line: string;
