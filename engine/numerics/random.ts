@@ -1,6 +1,6 @@
 /**
- * Seeded random numbers. Role: rehearsals and simulated chambers, where the same seed must give the same numbers on
- * every machine. Nothing in the calibration or the advice draws from it.
+ * Seeded random numbers. Role: rehearsals, simulated chambers and searches, where the same seed must give the same numbers on
+ * every machine; the forecast of a drift draws from it with a seed of its own, so that asking twice gives one answer.
  *
  * Generator: xoshiro128** 1.1 (D. Blackman and S. Vigna, ACM Trans. Math. Softw. 47 (2021) article 36), state of four
  * 32-bit words filled by two draws of SplitMix64 (G. L. Steele, D. Lea, C. H. Flood, OOPSLA 2014), low word first,

@@ -63,7 +63,7 @@ export const scenarios: readonly Scenario[] = [
   tube(
     "nothing-wrong",
     "a known chamber with nothing wrong: keep",
-    { ...KNOWN, afterClean: false, history: 45 },
+    { ...KNOWN, afterClean: false, cleanEvery: Number.POSITIVE_INFINITY, history: 30 },
     { tuning: false, cycle: Number.POSITIVE_INFINITY, production: 50 },
   ),
   tube("leak", "a known chamber; its second clean leaves an air leak", KNOWN, { leakAtClean: 1, production: 50 }),
