@@ -33,8 +33,11 @@ export const askVerbs: Verb[] = [
       chamberFlag(),
       flag("recipe", "NAME", "the recipe"),
       flag("for", "tuning|production", "overrules the mode found from the record"),
+      flag("fix", "silane,ammonia", "settings held as they are"),
+      flag("only", "time", "the only settings that may move"),
+      flag("limit-move", "3%", "how far each may move from the recipe in force: a share, or time=10s,silane=20sccm"),
     ],
-    examples: ["coatwright propose --chamber A2"],
+    examples: ["coatwright propose --chamber A2", "coatwright propose --chamber A2 --only time --limit-move 3%"],
     writes: true,
     run: async (call): Promise<Outcome> => {
       const { dryRun, ...draft } = call.stamp();
@@ -43,6 +46,11 @@ export const askVerbs: Verb[] = [
         chamber: call.args.need("chamber"),
         recipe: call.args.text("recipe"),
         forMode: modeOf(call.args.text("for")),
+        steered: {
+          fix: call.args.text("fix"),
+          only: call.args.text("only"),
+          limitMove: call.args.text("limit-move"),
+        },
         dryRun,
         draft,
       });

@@ -6,8 +6,9 @@ import type { ChamberModel, Settings } from "../../calibration/index.ts";
 import type { Chamber, Goal, Line } from "../line/line.ts";
 import type { CellLight } from "./cell-light.ts";
 import { chanceAt } from "./expectation.ts";
-import { type TunedLever, tunedLevers } from "./levers.ts";
+import type { TunedLever } from "./levers.ts";
 import { bestSettings, type Candidate } from "./search.ts";
+import { type Steering, steeredLevers, unsteered } from "./steering.ts";
 
 export interface ChooseContext {
   line: Line;
@@ -17,6 +18,8 @@ export interface ChooseContext {
   light: CellLight;
   before: Settings;
   anchor: Settings | null;
+  /** What the engineer holds, allows and limits; all that the line tunes when left out. */
+  steering?: Steering;
 }
 
 export interface Choice {
@@ -48,7 +51,7 @@ const meanInside = (c: ChooseContext, settings: Settings): boolean => {
  * inside. The simplest set within `closeEnough` of the fullest one's chance is taken.
  */
 export function choose(c: ChooseContext): Choice {
-  const levers = tunedLevers(c.chamber).filter((l) => c.before.has(l.name));
+  const levers = steeredLevers(c.chamber, c.before, c.steering ?? unsteered);
   const usual = levers.filter((l) => !l.reserve);
   const best = (set: readonly TunedLever[]) => bestSettings({ ...c, levers: set });
   const full = best(usual.length > 0 ? usual : levers);

@@ -27,6 +27,7 @@ import {
   runsWord,
   sistersSentence,
 } from "./reasons.ts";
+import type { Steering } from "./steering.ts";
 
 export interface Question {
   line: Line;
@@ -52,6 +53,8 @@ export interface Question {
   openChange: { change: string; state: "adopted" | "entered"; after: Settings; runsSince: number } | null;
   awaitingReadings: number;
   forMode: Mode | null;
+  /** What the engineer holds, allows and limits. */
+  steering?: Steering;
   sites: number;
 }
 
@@ -268,6 +271,7 @@ function opening(q: Question, now: Expectation, alarms: readonly Alarm[]): strin
   const cycle = q.runsSinceClean.length > 0 && q.model.log.events.some((e) => e.kind === "clean");
   const bad = new Set(q.record.filter((r) => r.suspect > undecided[1] - r.step).map((r) => r.entry));
   const runs = (q.runsSinceClean.length ? q.runsSinceClean : q.runsSinceEvent).filter((r) => !bad.has(r.entry));
+  if (q.steering?.words) out.push(`As you steered it (${q.steering.words}).`);
   const read = readSentence(runs, q.goal, cycle);
   if (read) out.push(read);
   if (!q.stated)

@@ -6,6 +6,7 @@ import { refuse } from "../../engine/index.ts";
 import { type Answer, decide, type Question } from "../advice/decide.ts";
 import { type Expectation, expectation } from "../advice/expectation.ts";
 import type { MeasuredRun, Mode } from "../advice/mode.ts";
+import { readSteering } from "../advice/steering.ts";
 import type { Chamber } from "../line/line.ts";
 import { asQuantities } from "../line/settings.ts";
 import { outside } from "../line/window.ts";
@@ -19,6 +20,7 @@ import { type RunRecord, wasMeasured } from "../record/timeline.ts";
 import { lastQualified, recipeInForce } from "../record/versions.ts";
 import { alarmEvidence, overruled } from "./alarming.ts";
 import { canonicalSettings, leversOf, lightReadings } from "./learn.ts";
+import { opticsAlone } from "./optics-alone.ts";
 import { goalWords } from "./words.ts";
 import type { Workspace } from "./workspace.ts";
 import { write } from "./writing.ts";
@@ -91,8 +93,22 @@ function usualSites(ws: Workspace, chamber: string): number {
   return run?.kind === "run" ? (run.readings.find((r) => r.sites)?.sites ?? 1) : 1;
 }
 
-export function question(ws: Workspace, name: string, recipe: string, forMode: Mode | null): Question {
+/** Flags of `propose` that steer it, as written. */
+export interface Steered {
+  fix?: string;
+  only?: string;
+  limitMove?: string;
+}
+
+export function question(
+  ws: Workspace,
+  name: string,
+  recipe: string,
+  forMode: Mode | null,
+  steered: Steered = {},
+): Question {
   const chamber = ws.chamber(name);
+  const steering = readSteering(chamber, steered);
   const model = chamberModel(ws, name);
   const force = inForce(ws, name, recipe);
   const anchor = lastQualified(ws.ledger, name, recipe);
@@ -125,6 +141,7 @@ export function question(ws: Workspace, name: string, recipe: string, forMode: M
       : null,
     awaitingReadings: recent.awaiting,
     forMode,
+    steering,
     sites: usualSites(ws, name),
   };
 }
@@ -160,13 +177,19 @@ export interface Proposed {
 }
 
 /** What a proposal of this kind rests on now. */
-export function proposalBasis(ws: Workspace, chamber: string, recipe: string, forMode: Mode | null): string {
+export function proposalBasis(
+  ws: Workspace,
+  chamber: string,
+  recipe: string,
+  forMode: Mode | null,
+  steering = "",
+): string {
   const change = openChange(ws.ledger, chamber, recipe);
   return basisHash(
     ws.ledger,
     chamber,
     recipe,
-    forMode ?? "",
+    `${forMode ?? ""}${steering === "" ? "" : ` steered: ${steering}`}`,
     ws.line.hash,
     change ? `${change.id} ${change.state}` : "",
   );
@@ -179,6 +202,7 @@ export function answerDocument(ws: Workspace, q: Question, answer: Answer): Reco
     recipe: q.recipe,
     mode: answer.mode,
     ...(q.forMode ? { mode_asked: q.forMode } : {}),
+    ...(q.steering?.words ? { steered: q.steering.words } : {}),
     advice: answer.advice,
     before: asQuantities(answer.before, q.chamber),
     after: asQuantities(answer.after, q.chamber),
@@ -202,16 +226,19 @@ export async function propose(
     chamber: string;
     recipe?: string;
     forMode: Mode | null;
+    steered?: Steered;
     dryRun: boolean;
     draft?: { at?: string; by?: string };
   },
 ): Promise<Proposed> {
   const recipe = ws.recipe(ws.chamber(how.chamber).name, how.recipe);
-  const q = question(ws, how.chamber, recipe, how.forMode);
+  const q = question(ws, how.chamber, recipe, how.forMode, how.steered);
   const answer = decide(q);
+  const optics = opticsAlone(q, answer);
+  if (optics) answer.because.push(optics);
   const document = answerDocument(ws, q, answer);
   if (how.dryRun) return { answer, document: { ...document, proposal: null }, proposal: null, repeated: false };
-  const basis = proposalBasis(ws, how.chamber, recipe, how.forMode);
+  const basis = proposalBasis(ws, how.chamber, recipe, how.forMode, q.steering?.words);
   const earlier = proposalOn(ws.ledger, basis);
   if (earlier) {
     const proposal = proposalId(earlier.seq);

@@ -80,7 +80,8 @@ export async function adopt(
     ws,
     (ledger, next) => {
       const forMode = mode === "tuning" || mode === "production" ? mode : null;
-      const basis = proposalBasis(ws, chamber, recipe, forMode);
+      const steered = document["steered"];
+      const basis = proposalBasis(ws, chamber, recipe, forMode, typeof steered === "string" ? steered : "");
       const draft = adoptDraft(ledger, { proposal: how.proposal, reason: how.reason, basis, at: how.at, by: how.by });
       insideWindow(ws, chamber, draft.data.after);
       sheet = sheetOf(ws, draft.data.before, draft.data.after);
