@@ -6,13 +6,13 @@
  * The manner (every Nth call, once and from then on, integrity check after each) is SQLite's, as told on its testing page.
  */
 import { describe, expect, it } from "vitest";
-import type { Refusal } from "../../../engine/index.ts";
-import { Book } from "../../../recipes/record/book.ts";
-import { lockHolder } from "../../../recipes/record/lock.ts";
-import { BOOK_PATH, bookOf, copyOf, FOLDER, runDraft, runNumbers } from "../../support/book-bench.ts";
-import { appendTwo, callsNeeded, expectSound, STARTS } from "../../support/book-faults.ts";
-import { type Fault, faultyFiles, Killed } from "../../support/faulty-files.ts";
-import { MemoryFiles, memoryPorts, seededRandom } from "../../support/memory-files.ts";
+import type { Refusal } from "../../engine/index.ts";
+import { Book } from "../../recipes/record/book.ts";
+import { lockHolder } from "../../recipes/record/lock.ts";
+import { BOOK_PATH, bookOf, copyOf, FOLDER, runDraft, runNumbers } from "../support/book-bench.ts";
+import { appendTwo, callsNeeded, expectSound, STARTS } from "../support/book-faults.ts";
+import { type Fault, faultyFiles, Killed } from "../support/faulty-files.ts";
+import { MemoryFiles, memoryPorts, seededRandom } from "../support/memory-files.ts";
 
 /** One of each answer; which code gives which answer is asked in file-trouble.test.ts. */
 const CODES = ["EIO", "ENOSPC", "EROFS"];

@@ -1,16 +1,16 @@
 /** The forecast of leaving the goal keeps its promises on chambers that drift, and its arithmetic on cases with closed answers. */
 import { describe, expect, it } from "vitest";
-import { type ChamberEvent, type Courses, LineModel } from "../../../calibration/index.ts";
-import { random } from "../../../engine/index.ts";
-import type { CellLight } from "../../../recipes/advice/cell-light.ts";
-import { forecast, forecastOf, horizon } from "../../../recipes/advice/forecast.ts";
-import type { Goal } from "../../../recipes/line/line.ts";
+import { type ChamberEvent, type Courses, LineModel } from "../../calibration/index.ts";
+import { random } from "../../engine/index.ts";
+import type { CellLight } from "../../recipes/advice/cell-light.ts";
+import { forecast, forecastOf, horizon } from "../../recipes/advice/forecast.ts";
+import type { Goal } from "../../recipes/line/line.ts";
 import {
   drawLinearWorld,
   type LinearChamber,
   linearChamber,
   statedGauge,
-} from "../../../recipes/rehearsal/linear-world.ts";
+} from "../../recipes/rehearsal/linear-world.ts";
 
 /** Light that no goal here asks for. */
 const dark = {
