@@ -52,6 +52,8 @@ export const rehearsing = () => import("./desk/rehearsing.ts");
 export type { Figure, ScenarioScore, Score, WorldAsked, WorldPlayed } from "./desk/rehearsing.ts";
 export type { ReplaySummary } from "./desk/replay-words.ts";
 export type { Replay } from "./desk/replaying.ts";
+export type { SealCount } from "./desk/shadow-words.ts";
+export type { SealDocument } from "./desk/shadowing.ts";
 export type { FileSystem, Ports } from "./ports.ts";
 export { changeAt } from "./record/change-steps.ts";
 export { openChange } from "./record/changes.ts";

@@ -34,22 +34,34 @@ const laterColumns: readonly Column[] = [
   { head: "changes", cell: ({ changesPer100 }) => plusMinus(changesPer100, 1) },
   { head: "idle", cell: ({ idlePer100 }) => plusMinus(idlePer100, 1) },
 ];
+const measuredColumn: Column = { head: "measured", cell: ({ measured }) => plusMinus(measured, 1) };
 const leakColumns: readonly Column[] = [0, 1, 2].map((at) => ({
-  head: `leak<=${at + 1}`,
+  head: `named<=${at + 1}`,
   cell: ({ leakNamed }) => (leakNamed ? plusMinus(leakNamed[at], 2) : "-"),
 }));
 
 /** What the heads of the columns mean. */
 const LEGEND =
-  "median, mean, p90: runs until a reading lay in goal (20 at most). <=1, <=2, <=3: share of worlds that needed no more. untrue: of those, film not in goal. later: true film in goal in production; worst: a tenth of the worlds do worse. changes: per 100 runs of production; idle: per 100 runs before which nothing was wrong. ±: standard error over worlds.";
+  "median, mean, p90: runs until a reading lay in goal (20 at most). <=1, <=2, <=3: share of worlds that needed no more. untrue: of those, film not in goal. later: true film in goal in production; worst: a tenth of the worlds do worse. changes: per 100 runs of production; idle: per 100 runs before which nothing was wrong. measured: runs measured in a world, tuning included. ±: standard error over worlds.";
 
-function table(scores: ScenarioScore["scores"]): string[] {
+function scoreTable({ scores, everyRunMeasured }: ScenarioScore): string[] {
   const all = scores.map(({ score }) => score);
-  const columns = [
+  return table(scores, [
     ...(all.some((s) => s.runs) ? tuningColumns : []),
     ...(all.some((s) => has(s.later)) ? laterColumns : []),
-    ...(all.some((s) => s.leakNamed) ? leakColumns : []),
-  ];
+    ...(everyRunMeasured ? [] : [measuredColumn]),
+  ]);
+}
+
+/** Who named the leak, and within how many measured runs; those that say nothing are left out. */
+function leakTable(scores: ScenarioScore["scores"]): string[] {
+  const saying = scores.filter(({ score }) => score.leakNamed?.some((f) => f.value > 0));
+  if (!scores.some(({ score }) => score.leakNamed)) return [];
+  if (saying.length === 0) return ["", "nobody named the leak"];
+  return ["", "the leak, named within so many measured runs", ...table(saying, leakColumns)];
+}
+
+function table(scores: ScenarioScore["scores"], columns: readonly Column[]): string[] {
   const rows = [
     ["", ...columns.map((c) => c.head)],
     ...scores.map(({ title, score }) => [title, ...columns.map((c) => c.cell(score))]),
@@ -103,7 +115,13 @@ function advice(scores: ScenarioScore["scores"]): string[] {
     const stops = has(score.falseStopsPer100)
       ? `; stopped with nothing broken ${plusMinus(score.falseStopsPer100, 2)} times per 100 runs of production`
       : "";
-    return ["", ...wrap(`${title} advised ${words}${stops}.`, width)];
+    const done = score.saidDone
+      ? ` It said that tuning is done after ${fixed(score.saidDone.median, 1)} runs (median).`
+      : "";
+    const untold = score.toldUntold
+      ? ` Its first answer said what the history cannot tell in ${plusMinus(score.toldUntold, 2)} of the worlds.`
+      : "";
+    return ["", ...wrap(`${title} advised ${words}${stops}.${done}${untold}`, width)];
   });
 }
 
@@ -116,7 +134,8 @@ function scenarioText(scenario: ScenarioScore, ascii: boolean): string[] {
       width,
     ),
     "",
-    ...table(scores),
+    ...scoreTable(scenario),
+    ...leakTable(scores),
     ...(later ? bars(scores, ascii) : []),
     ...(gapClosed && has(gapClosed)
       ? ["", `share of the way from the tuned EWMA to the oracle: ${plusMinus(gapClosed, 2)}`]

@@ -43,9 +43,12 @@ export function replayText(replay: Replay, summary: ReplaySummary): string {
         film(run.rival),
         chanceText(run.ours.chance).padStart(6),
         (run.ours.inGoal === null ? "-" : run.ours.inGoal ? "in" : "out").padEnd(4),
-        `${run.ours.advice?.replaceAll("_", " ") ?? "-"}${mark(run.ours.insideIndex) || mark(run.ours.insideThickness) ? " (reading outside its interval)" : ""}`,
+        `${run.ours.advice?.replaceAll("_", " ") ?? "-"}${mark(run.ours.insideIndex) || mark(run.ours.insideThickness) ? ", a surprise" : ""}`,
       ].join("  "),
     ),
+    ...(shown.some((run) => mark(run.ours.insideIndex) || mark(run.ours.insideThickness))
+      ? ["  a surprise: the reading fell outside its 95 % interval"]
+      : []),
     ...(replay.runs.length > shown.length ? [`  and ${replay.runs.length - shown.length} runs before them`] : []),
   ].join("\n");
 }

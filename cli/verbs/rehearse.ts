@@ -8,9 +8,12 @@ import { rehearsing } from "../../recipes/index.ts";
 import type { Args } from "../args.ts";
 import { rehearsalText } from "../text/rehearse.ts";
 import { replayText } from "../text/replay.ts";
+import { sealedText, sealText } from "../text/shadow.ts";
 import { type Call, chamberFlag, flag, type Outcome, toggle, type Verb } from "./verb.ts";
 
 const USUAL_WORLDS = 20;
+/** Fewer worlds than this are played before anybody asks how far they are. */
+const FEW = 10;
 const USUAL_SEED = "rehearsal";
 
 function count(args: Args, name: string, usual: number): number {
@@ -33,12 +36,14 @@ function progressOf(all: number): (back: number) => void {
   const every = Math.max(1, Math.round(all / 10));
   return (back) => {
     if (process.stderr.isTTY) process.stderr.write(`\r${back} of ${all} worlds${back === all ? "\n" : ""}`);
-    else if (back % every === 0 || back === all) process.stderr.write(`${back} of ${all} worlds\n`);
+    else if (all >= FEW && (back % every === 0 || back === all)) process.stderr.write(`${back} of ${all} worlds\n`);
   };
 }
 
 async function onWorlds(args: Args): Promise<Outcome> {
   const desk = await rehearsing();
+  for (const name of ["scenario", "practices"])
+    if (args.has(name) && names(args.text(name)).length === 0) refuse("bad-argument", `--${name} names nothing`);
   const asked = desk.rehearsalOf({
     scenarios: args.text("scenario") === undefined ? ["base"] : names(args.text("scenario")),
     practices: names(args.text("practices")),
@@ -55,10 +60,25 @@ async function onWorlds(args: Args): Promise<Outcome> {
   };
 }
 
+/** Seals what the next measured run will read, or counts what became of the seals. */
+async function inShadow(call: Call): Promise<Outcome> {
+  const desk = await rehearsing();
+  const ws = call.workspace();
+  if (call.args.switch("count")) {
+    const seals = desk.countSeals(ws, call.args.text("chamber"));
+    const count = desk.sealCount(seals);
+    const broken = count.fates.altered + count.fates.missing > 0;
+    return { document: desk.sealCountDocument(seals, count), text: sealText(count), exit: broken ? 3 : 0 };
+  }
+  const { dryRun, ...draft } = call.stamp();
+  const chamber = call.args.need("chamber");
+  const { hash, document, notices, receipts } = await desk.seal(ws, { chamber, dryRun, draft });
+  const { schema: _, ...rest } = document;
+  return { document: { hash, entry: receipts[0]?.seq ?? null, ...rest }, text: sealedText(hash, document), notices };
+}
+
 /** Over the line's own book: the chamber named, or every one with enough measured runs. */
 async function onBook(call: Call): Promise<Outcome> {
-  for (const name of ["scenario", "worlds", "seed", "practices", "workers"])
-    if (call.args.has(name)) refuse("bad-argument", `--${name} has no part in a replay of the book`);
   const desk = await rehearsing();
   const ws = call.workspace();
   if (ws.book.damage.length > 0) throw new Refusal(ws.book.problems());
@@ -86,19 +106,31 @@ export const rehearseVerbs: Verb[] = [
       flag("practices", "NAME,..", "only these practices"),
       flag("workers", "N", "threads; as many as there are cores when left out"),
       toggle("replay", "over the line's own book instead: what was expected of each run before it was read"),
+      toggle("shadow", "seal what the next measured run of --chamber will read, before it is made"),
+      toggle("count", "with --shadow: what became of the sealed predictions"),
       chamberFlag(false),
     ],
     examples: [
       "coatwright rehearse",
       "coatwright rehearse --scenario base,tight --worlds 100",
       "coatwright rehearse --replay --chamber A2",
+      "coatwright rehearse --shadow --chamber A2",
+      "coatwright rehearse --shadow --count",
     ],
-    writes: false,
+    writes: true,
     run: (call) => {
-      if (call.args.switch("replay")) return onBook(call);
-      if (call.args.has("chamber"))
-        refuse("bad-argument", "--chamber goes with --replay; virtual chambers have no names");
-      return onWorlds(call.args);
+      const { args } = call;
+      const [replay, shadow] = [args.switch("replay"), args.switch("shadow")];
+      if (replay && shadow) refuse("bad-argument", "--replay and --shadow are two things; ask for one");
+      if (args.switch("count") && !shadow) refuse("bad-argument", "--count goes with --shadow");
+      if (!replay && !shadow) {
+        if (args.has("chamber"))
+          refuse("bad-argument", "--chamber goes with --replay and --shadow; virtual chambers have no names");
+        return onWorlds(args);
+      }
+      for (const name of ["scenario", "worlds", "seed", "practices", "workers"])
+        if (args.has(name)) refuse("bad-argument", `--${name} has no part in what the line's own book says`);
+      return replay ? onBook(call) : inShadow(call);
     },
   },
 ];

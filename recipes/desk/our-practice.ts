@@ -200,10 +200,13 @@ class OurHand implements Hand {
   }
 
   says() {
-    if (!this.answer) return { chance: null, advice: "none", done: false, alarms: [] };
-    const { advice, ahead, now, done, alarms } = this.answer;
+    if (!this.answer) return { chance: null, advice: "none", mode: "none", done: false, alarms: [], cannotTell: [] };
+    const { advice, mode, ahead, now, done, alarms } = this.answer;
+    // The light of the cell is not asked here, so that it is not told is no news.
+    const dark = [...now.cannotTell, ...ahead.cannotTell];
+    const cannotTell = this.answer.cannotTell.filter((sentence) => !dark.includes(sentence));
     const chance = advice === "change" || advice === "out_of_reach" ? ahead.chanceInGoal : now.chanceInGoal;
-    return { chance, advice, done, alarms: alarms.filter((a) => a.certain).map((a) => a.name) };
+    return { chance, advice, mode, done, alarms: alarms.filter((a) => a.certain).map((a) => a.name), cannotTell };
   }
 
   /**

@@ -13,6 +13,8 @@ import { ours } from "./our-practice.ts";
 
 export { replayDocument, summaryOf } from "./replay-words.ts";
 export { replayable, replayChamber } from "./replaying.ts";
+export { sealCount, sealCountDocument } from "./shadow-words.ts";
+export { countSeals, seal } from "./shadowing.ts";
 export type { Figure, Played, Score };
 
 /** Every practice in the order of the table. */
@@ -83,6 +85,8 @@ export interface ScenarioScore {
   title: string;
   seeds: { first: string; last: string };
   worlds: number;
+  /** Is every run of production measured anyway? */
+  everyRunMeasured: boolean;
   scores: { title: string; score: Score }[];
   /** Share of the way from the tuned EWMA to the oracle; null where one of the three was not asked. */
   gapClosed: Figure | null;
@@ -102,6 +106,7 @@ export function scoreboard(asked: RehearsalAsked, played: readonly WorldPlayed[]
       title: scenarioNamed(name).title,
       seeds: { first: `${asked.seed}-1`, last: `${asked.seed}-${asked.worlds}` },
       worlds: asked.worlds,
+      everyRunMeasured: scenarioNamed(name).measuredEvery === 1,
       scores: asked.practices.map((practice) => ({
         title: practiceNamed(practice).title,
         score: scoreOf(practice, of(practice) ?? []),
@@ -138,6 +143,7 @@ export function scoreboardDocument(board: readonly ScenarioScore[]): Record<stri
         false_done: figure(score.falseDone),
         later_in_goal: figure(score.later),
         worst_decile: figure(score.worstDecile),
+        measured_runs: figure(score.measured),
         changes_per_100: figure(score.changesPer100),
         idle_changes_per_100: figure(score.idlePer100),
         false_stops_per_100: figure(score.falseStopsPer100),
@@ -146,6 +152,8 @@ export function scoreboardDocument(board: readonly ScenarioScore[]): Record<stri
           within_2: figure(score.leakNamed[1]),
           within_3: figure(score.leakNamed[2]),
         },
+        said_done: score.saidDone && { median: number(score.saidDone.median), share: figure(score.saidDone.share) },
+        told_untold: figure(score.toldUntold),
         advice: Object.fromEntries(Object.entries(score.advice).map(([name, share]) => [name, number(share)])),
         chances: score.calibration.map((c) => ({
           from: c.from,

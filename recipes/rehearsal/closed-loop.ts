@@ -7,7 +7,7 @@
 import { sameSettings, usable } from "./practices/dials.ts";
 import type { Practice } from "./practices/practice.ts";
 import type { Scenario } from "./scenarios.ts";
-import { type Brief, inGoal, missOf, type Reading, type Stage } from "./stage.ts";
+import { type Brief, inGoal, type Reading, type Stage } from "./stage.ts";
 import type { ChamberSettings } from "./worlds.ts";
 
 export const MOST_RUNS = 20;
@@ -31,6 +31,8 @@ export interface Played {
   saidDone: number | null;
   /** True film in goal, over production. */
   later: { made: number; hits: number };
+  /** Runs measured, over tuning and production: those due, and those that were asked for. */
+  measured: number;
   changes: number;
   /** Changes made while there was nothing wrong, and the depositions before which there was nothing wrong. */
   idle: { changes: number; chances: number };
@@ -42,6 +44,8 @@ export interface Played {
   /** Measured runs after the leak until it was named; null where it was not, or there was none. */
   leakNamedAfter: number | null;
   leaked: boolean;
+  /** Did its first answer say what the history cannot tell? Null where there is nothing of the kind, or it says nothing. */
+  toldUntold: boolean | null;
 }
 
 const fresh = (): Played => ({
@@ -50,6 +54,7 @@ const fresh = (): Played => ({
   falseDone: false,
   saidDone: null,
   later: { made: 0, hits: 0 },
+  measured: 0,
   changes: 0,
   idle: { changes: 0, chances: 0 },
   stated: [],
@@ -57,6 +62,7 @@ const fresh = (): Played => ({
   falseStops: 0,
   leakNamedAfter: null,
   leaked: false,
+  toldUntold: null,
 });
 
 const measuredHit = (brief: Brief, reading: Reading): boolean => {
@@ -85,6 +91,8 @@ export function playLoop(stage: Stage, practice: Practice, scenario: Scenario): 
       const settings = hand.next();
       const said = hand.says?.();
       if (!said) return settings;
+      if (scenario.untold !== undefined && played.toldUntold === null)
+        played.toldUntold = said.cannotTell.some((sentence) => sentence.includes(scenario.untold ?? ""));
       if (said.done && played.saidDone === null) played.saidDone = deposited;
       played.advice[said.advice] = (played.advice[said.advice] ?? 0) + 1;
       if (said.advice !== "fault" || asked > 0) return settings;
@@ -101,9 +109,13 @@ export function playLoop(stage: Stage, practice: Practice, scenario: Scenario): 
     }
   }
 
-  function deposit(look: boolean, tuning: boolean) {
+  function deposit(due: boolean, tuning: boolean) {
     const settings = ask();
-    const chance = hand.says?.()?.chance ?? null;
+    const said = hand.says?.();
+    const chance = said?.chance ?? null;
+    // Who says that one more run should be measured gets it measured.
+    const look = due || said?.advice === "measure";
+    if (look) played.measured++;
     const moved = !sameSettings(settings, inForce);
     inForce = settings;
     const { film, reading } = chamber.run(settings);
@@ -156,7 +168,3 @@ export function playLoop(stage: Stage, practice: Practice, scenario: Scenario): 
   }
   return played;
 }
-
-/** Squared miss, in tolerances, of the film expected at settings: how near the nearest point of a window comes. */
-export const missAt = (stage: Stage, settings: ChamberSettings): number =>
-  missOf(stage.brief, stage.chamber().usual(settings));

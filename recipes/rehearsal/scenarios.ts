@@ -20,6 +20,8 @@ export interface Scenario {
   measuredEvery: number;
   /** A leak begins at the clean that comes after so many cleans. */
   leakAtClean?: number;
+  /** A setting of which the history cannot tell anything; a practice that speaks should say so at first. */
+  untold?: string;
   stage(seed: string): Stage;
 }
 
@@ -66,8 +68,16 @@ export const scenarios: readonly Scenario[] = [
     { ...KNOWN, afterClean: false, cleanEvery: Number.POSITIVE_INFINITY, history: 30 },
     { tuning: false, cycle: Number.POSITIVE_INFINITY, production: 50 },
   ),
-  tube("leak", "a known chamber; its second clean leaves an air leak", KNOWN, { leakAtClean: 1, production: 50 }),
-  tube("silane-only", "a history in which only silane moved", { ...KNOWN, sisters: 0, moved: ["silane"] }),
+  tube("leak", "a known chamber; the clean after it was tuned leaves an air leak", KNOWN, {
+    leakAtClean: 0,
+    production: 50,
+  }),
+  tube(
+    "silane-only",
+    "a history in which only silane moved",
+    { ...KNOWN, sisters: 0, moved: ["silane"] },
+    { untold: "ammonia" },
+  ),
   tube("outliers", "a known chamber after a clean, 5 % gross slips", { ...KNOWN, slips: 0.05 }),
   tube("unwritten", "half of the cleans are not written down", { ...KNOWN, unwritten: 0.5 }),
   tube(

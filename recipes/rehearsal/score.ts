@@ -23,12 +23,18 @@ export interface Score {
   later: Figure;
   worstDecile: Figure;
   changesPer100: Figure;
+  /** Runs measured in a world, tuning included. */
+  measured: Figure;
   /** Changes made per 100 depositions before which nothing was wrong. */
   idlePer100: Figure;
   /** Stops without anything broken, per 100 depositions of production. */
   falseStopsPer100: Figure;
   /** Of the leaks, those named within 1, 2 and 3 measured runs; null where none came. */
   leakNamed: [Figure, Figure, Figure] | null;
+  /** Depositions until it said that tuning is done, median over the worlds in which it did, and the share of these. */
+  saidDone: { median: number; share: Figure } | null;
+  /** Share of worlds in which its first answer said what the history cannot tell; null where there is nothing to say. */
+  toldUntold: Figure | null;
   /** Shares of the advice given, by name. */
   advice: Record<string, number>;
   /** Chances stated, by tenths, beside what came of them. */
@@ -84,6 +90,7 @@ export function scoreOf(practice: string, worlds: readonly Played[]): Score {
   const later = worlds.filter((p) => p.later.made > 0);
   const leaks = worlds.filter((p) => p.leaked);
   const named = (most: number) => share(leaks, (p) => p.leakNamedAfter !== null && p.leakNamedAfter <= most);
+  const asked = worlds.filter((p) => p.toldUntold !== null);
   const worst = (some: readonly Played[]) => quantile(some.map(laterShare), 0.1);
   const made = (p: Played) => p.later.made;
   return {
@@ -121,14 +128,28 @@ export function scoreOf(practice: string, worlds: readonly Played[]): Score {
       ),
       100,
     ),
+    measured: per(
+      worlds,
+      (p) => p.measured,
+      () => 1,
+    ),
     falseStopsPer100: times(
       per(later, (p) => p.falseStops, made),
       100,
     ),
     leakNamed: leaks.length === 0 ? null : [named(1), named(2), named(3)],
+    saidDone: doneOf(worlds),
+    toldUntold: asked.length === 0 ? null : share(asked, (p) => p.toldUntold === true),
     advice: adviceShares(worlds),
     calibration: calibrationOf(worlds),
   };
+}
+
+function doneOf(worlds: readonly Played[]): Score["saidDone"] {
+  const said = worlds.flatMap(({ saidDone }) => saidDone ?? []);
+  if (said.length === 0) return null;
+  const share = ratioOf(worlds.map((p) => ({ over: Number(p.saidDone !== null), by: 1 })));
+  return { median: quantile(said, 0.5), share };
 }
 
 function adviceShares(worlds: readonly Played[]): Record<string, number> {

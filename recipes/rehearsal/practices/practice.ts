@@ -16,10 +16,14 @@ export interface Statement {
   /** Chance that the true film of the next deposition is in goal. */
   chance: number | null;
   advice: string;
+  /** Does it take the chamber to be tuned, or in production? */
+  mode: string;
   /** Does it say that tuning is finished? */
   done: boolean;
   /** Alarms that stop it, by name. */
   alarms: readonly string[];
+  /** What it says that the history cannot tell. */
+  cannotTell: readonly string[];
 }
 
 export interface Hand {

@@ -53,6 +53,7 @@ const writing = [
   ["enter", "c-000001"],
   ["close", "c-000001"],
   ["undo", "c-000001", "--reason", "x"],
+  ["rehearse", "--shadow", "--chamber", "A2"],
 ];
 
 describe("a writing verb", () => {

@@ -113,7 +113,9 @@ describe("the score of a loop", () => {
 
   it("counts runs to goal and later films as somebody with the same chamber would", () => {
     const { brief } = stage;
-    const settings = new Map(brief.start).set("time", 130);
+    const chamberNow = stage.chamber();
+    // About right, so that some films are in goal and some are not.
+    const settings = oracle.begin(brief, { film: (at) => chamberNow.usual(at) }).next();
     const result = playLoop(stage, still(settings), base);
     const chamber = stage.chamber();
     let runs = 0;
@@ -127,6 +129,8 @@ describe("the score of a loop", () => {
       if (inGoal(brief, chamber.run(settings).film)) hits++;
     }
     expect(result).toMatchObject({ runs, later: { made: 100, hits }, changes: 0 });
+    expect(hits).toBeGreaterThan(30);
+    expect(hits).toBeLessThan(100);
   });
 
   it("a fixed plan is not cut short by a lucky hit", () => {
@@ -171,13 +175,36 @@ describe("the score of a loop", () => {
     const stopping = playLoop(
       one,
       still(start, {
-        says: () => ({ chance: 0.9, advice: "fault", done: false, alarms: ["index_low"] }),
+        says: () => ({
+          chance: 0.9,
+          advice: "fault",
+          mode: "production",
+          done: false,
+          alarms: ["index_low"],
+          cannotTell: [],
+        }),
         looked: (found) => void looked.push(found),
       }),
       { ...scenarioNamed("nothing-wrong"), production: 3 },
     );
     expect(stopping.falseStops).toBe(3);
     expect(looked).toEqual([false, false, false]);
+  });
+
+  it("a run that is asked to be measured is, beside those that are due", () => {
+    const scenario = scenarioNamed("fifth");
+    const one = scenario.stage("ask");
+    const seen = (advice: string) => {
+      let looks = 0;
+      const hand: Partial<Hand> = {
+        saw: ({ reading }) => void (reading !== null && looks++),
+        says: () => ({ chance: null, advice, mode: "production", done: false, alarms: [], cannotTell: [] }),
+      };
+      const { measured } = playLoop(one, still(one.brief.start, hand), { ...scenario, tuning: false, production: 20 });
+      expect(measured).toBe(looks);
+      return looks;
+    };
+    expect([seen("keep"), seen("measure")]).toEqual([4, 20]);
   });
 
   it("a leak that is named is mended, and counted from its first measured run", () => {
@@ -187,8 +214,15 @@ describe("the score of a loop", () => {
     let cleans = 0;
     const naming = still(one.brief.start, {
       cleaned: () => void cleans++,
-      saw: () => void (cleans === 2 && seen++),
-      says: () => ({ chance: null, advice: seen === 2 ? "fault" : "keep", done: false, alarms: [] }),
+      saw: () => void (cleans === 1 && seen++),
+      says: () => ({
+        chance: null,
+        advice: seen === 2 ? "fault" : "keep",
+        mode: "production",
+        done: false,
+        alarms: [],
+        cannotTell: [],
+      }),
       looked: (found) => {
         expect(found).toBe(true);
         seen = 99;

@@ -10,6 +10,7 @@ const world = (more: Partial<Played>): Played => ({
   falseDone: false,
   saidDone: null,
   later: { made: 100, hits: 100 },
+  measured: 0,
   changes: 0,
   idle: { changes: 0, chances: 0 },
   stated: [],
@@ -17,6 +18,7 @@ const world = (more: Partial<Played>): Played => ({
   falseStops: 0,
   leakNamedAfter: null,
   leaked: false,
+  toldUntold: null,
   ...more,
 });
 
@@ -70,6 +72,15 @@ describe("the figures of a practice", () => {
   it("count leaks among those that came", () => {
     const leaks = [1, 3, null].map((leakNamedAfter) => world({ leaked: true, leakNamedAfter }));
     expect(scoreOf("some", [...leaks, world({})]).leakNamed?.map((f) => f.value)).toEqual([1 / 3, 1 / 3, 2 / 3]);
+  });
+
+  it("count what was said, and when, among those that said anything", () => {
+    const some = [3, 5, null].map((saidDone) =>
+      world({ saidDone, toldUntold: saidDone === null ? null : saidDone === 3 }),
+    );
+    const { saidDone, toldUntold } = scoreOf("some", some);
+    expect(saidDone).toMatchObject({ median: 4, share: { value: 2 / 3 } });
+    expect(toldUntold?.value).toBe(0.5);
   });
 
   it("are nothing where there was nothing to tune", () => {
