@@ -8,6 +8,7 @@ import { logSumExp } from "../../engine/index.ts";
 import type { ChamberModel } from "../chamber-model.ts";
 import type { LineModel } from "../line-model.ts";
 import { readingSlips } from "../priors.ts";
+import type { ChamberLog } from "../run.ts";
 import {
   asItStandsLog,
   type LawBefore,
@@ -68,8 +69,13 @@ export function readingMistakes(line: LineModel, chamber: string): ReadingMistak
   const own = lastReadings(line.chamber(chamber));
   const found = impossibleMinima(own);
   if (!own.some((d) => d.isDoubted)) return found;
+  // A chamber without a run so near to a doubted one need not be asked.
+  const near = (log: ChamberLog) =>
+    own.some(
+      (d) => d.isDoubted && log.events.some((e) => e.kind === "run" && Math.abs(e.entry - d.entry) <= entriesApart),
+    );
   const elsewhere = line.logs
-    .filter((log) => log.chamber !== chamber)
+    .filter((log) => log.chamber !== chamber && near(log))
     .flatMap((log) => lastReadings(line.chamber(log.chamber)).filter((d) => d.isDoubted));
   const explained = new Set<number>();
   for (const doubt of [...own].reverse()) {

@@ -52,7 +52,8 @@ function known(chamber: Chamber, name: string, flag: string, tuned: readonly str
       hint: near ? `did you mean ${near}?` : [...chamber.settings.keys()].join(", "),
     });
   }
-  if (!tuned.includes(name)) {
+  // Held already: asking for it once more is no mistake.
+  if (flag !== "--fix" && !tuned.includes(name)) {
     refuse("not-tuned", `${flag}: the line does not say to tune ${name}, so a proposal never moves it`, {
       hint: `tuned are ${tuned.join(", ") || "none"}; tune: true in line.yaml`,
     });

@@ -70,7 +70,8 @@ describe("a steered proposal", () => {
     const chamber = ws.chamber("B1");
     const code = (given: object) => refusalCode(() => readSteering(chamber, given));
     expect(code({ only: "tiem" })).toBe("unknown-setting");
-    expect(code({ fix: "power" })).toBe("not-tuned");
+    expect(code({ only: "power" })).toBe("not-tuned");
+    expect(readSteering(chamber, { fix: "power" }).fixed).toEqual(["power"]);
     expect(code({ limitMove: "0%" })).toBe("bad-limit");
     expect(code({ limitMove: "300%" })).toBe("bad-limit");
     expect(code({ limitMove: "time=-3s" })).toBe("bad-limit");
