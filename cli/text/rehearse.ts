@@ -3,7 +3,7 @@ import type { Figure, ScenarioScore, Score } from "../../recipes/index.ts";
 import { fixed } from "./numbers.ts";
 import { wrap } from "./width.ts";
 
-const width = 100;
+const width = 80;
 const barCells = 30;
 
 const has = (f: Figure) => Number.isFinite(f.value);
@@ -44,13 +44,17 @@ const leakColumns: readonly Column[] = [0, 1, 2].map((at) => ({
 const LEGEND =
   "median, mean, p90: runs until a reading lay in goal (20 at most). <=1, <=2, <=3: share of worlds that needed no more. untrue: of those, film not in goal. later: true film in goal in production; worst: a tenth of the worlds do worse. changes: per 100 runs of production; idle: per 100 runs before which nothing was wrong. measured: runs measured in a world, tuning included. ±: standard error over worlds.";
 
+/** Tuning and production apart, so that each fits 80 columns. */
 function scoreTable({ scores, everyRunMeasured }: ScenarioScore): string[] {
   const all = scores.map(({ score }) => score);
-  return table(scores, [
-    ...(all.some((s) => s.runs) ? tuningColumns : []),
+  const production = [
     ...(all.some((s) => has(s.later)) ? laterColumns : []),
     ...(everyRunMeasured ? [] : [measuredColumn]),
-  ]);
+  ];
+  return [
+    ...(all.some((s) => s.runs) ? [...table(scores, tuningColumns), ""] : []),
+    ...(production.length > 0 ? table(scores, production) : []),
+  ];
 }
 
 /** Who named the leak, and within how many measured runs; those that say nothing are left out. */

@@ -14,7 +14,7 @@ const HALVINGS = 40;
 
 export const oracle: Practice = {
   name: "oracle",
-  title: "oracle (knows the chamber)",
+  title: "oracle (sees the truth)",
   begin(brief, truth) {
     const { goal, reference } = brief;
     let inForce = brief.start;
