@@ -31,7 +31,7 @@ export interface Choice {
 }
 
 /** A set of fewer levers is taken when its chance in goal falls short of the best by no more than this. */
-const closeEnough = 0.03;
+const closeEnough = 0.02;
 
 /** Is this film inside the film goals? */
 export function filmInside(goal: Goal, index: number, thicknessNm: number): boolean {

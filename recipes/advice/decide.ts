@@ -73,7 +73,9 @@ export interface Answer {
 }
 
 /** A gain in chance smaller than this is not worth a change, whatever the loss says. */
-const worthwhile: Record<Mode, number> = { tuning: 0.03, production: 0.05 };
+const worthwhile: Record<Mode, number> = { tuning: 0.02, production: 0.05 };
+/** A doubt is waited out where the change it speaks against promises no more than this in chance. */
+const patience = 0.15;
 /** Where even a perfectly known chamber would hardly ever be in goal, tuning is not done, it is hopeless. */
 const leastDone = 0.2;
 /** Tuning is done at this share of the chance a perfectly known chamber would have. */
@@ -149,11 +151,13 @@ export function decide(q: Question): Answer {
   const settled = outside(q.before, q.chamber, q.line).length === 0;
   const reached = best.inside && reaches(q, ahead);
   if (settled && (reached || reaches(q, now))) {
-    const doubt = openDoubt(q);
+    // Waiting costs a run at the present chance: where a change promises much more, it is made all the same.
+    const urgent = moved && ahead.chanceJudged - now.chanceJudged > patience;
+    const doubt = urgent ? null : openDoubt(q);
     if (doubt) return finish("measure", q.before, [doubt]);
     if (!moved || gain <= deadBand[mode] || ahead.chanceJudged - now.chanceJudged < worthwhile[mode])
       return finish("keep", q.before, keepReasons(q, now, ahead, best.settings, mode));
-    const noise = mode === "production" ? oneReading(q) : null;
+    const noise = mode === "production" && !urgent ? oneReading(q) : null;
     if (noise) return finish("measure", q.before, [noise]);
   }
   const stopAtAnchor = (wanted: Settings): Answer => {

@@ -8,7 +8,7 @@ import type { Goal } from "../line/line.ts";
 export type Mode = "tuning" | "production";
 
 /** Loss that must be gained before a production recipe is touched (bounded adjustment: Deming's funnel warns against less). */
-export const deadBand: Record<Mode, number> = { tuning: 0.02, production: 0.1 };
+export const deadBand: Record<Mode, number> = { tuning: 0.02, production: 0.04 };
 
 export interface MeasuredRun {
   /** Its entry in the book. */
