@@ -4,6 +4,7 @@ import { Refusal } from "../../engine/index.ts";
 import { gaugeCovariance, gaugeFor } from "../advice/expectation.ts";
 import type { Chamber } from "../line/line.ts";
 import type { Reading } from "../record/entries.ts";
+import { biasThen, latestMs } from "./gauge-readings.ts";
 import type { Workspace } from "./workspace.ts";
 
 /** Compares the readings with what was expected of these settings before they were known. */
@@ -40,7 +41,9 @@ function expectedOf(ws: Workspace, chamber: Chamber, settings: Settings, film: R
   if (one.ownReadings === 0 && one.context.sisters.length === 0) return null;
   try {
     const gauge = ws.line.gauges.get(film.gauge) ?? gaugeFor(ws.line, "polished", "film");
-    const bias = ws.gaugeBiases.get(film.gauge)?.at(ws.ports.now() / 86_400_000);
+    // As of the last thing that happened, as proposals foresee it: a person compares the two.
+    const then = biasThen(ws.gaugeBiases, latestMs(ws.ledger));
+    const bias = then?.biases.get(film.gauge)?.at(then.day);
     const law = one.measuredLaw(settings, gaugeCovariance(gauge, film.sites ?? 1), bias ?? noBias);
     return { index: indexBounds(law), thickness: thicknessBounds(law) };
   } catch (error) {
